@@ -1,0 +1,33 @@
+import { z } from 'zod'
+
+const schema = z.object({
+  HOST: z.string().min(1).default('127.0.0.1'),
+  PORT: z.coerce.number().int().min(1).max(65535).default(3000),
+  DATABASE_URL: z.string().regex(/^postgres(ql)?:\/\//, 'must begin with postgres:// or postgresql://'),
+  DATA_DIR: z.string().min(1).default('.data'),
+  SMTP_URL: z.string().regex(/^smtps?:\/\//, 'must begin with smtp:// or smtps://').optional(),
+  MAIL_FROM: z.string().min(3).default('Fettle <fettle@tarn-hollow.example>'),
+  PUBLIC_URL: z.string().regex(/^https?:\/\//, 'must begin with http:// or https://').optional(),
+  DEMO: z.enum(['on', 'off']).default('on'),
+  ADMIN_EMAIL: z.email('must be an e-mail address').optional(),
+  ADMIN_PASSWORD: z.string().min(12, 'must have at least 12 characters').optional(),
+  UPLOAD_LIMIT_BYTES: z.coerce.number().int().positive().default(20 * 1024 ** 3),
+  WORKER_THREADS: z.coerce.number().int().min(1).max(64).optional(),
+})
+
+export type Environment = z.output<typeof schema> & { PUBLIC_URL: string }
+
+/**
+ * Reads the settings, or throws one Error whose message says which is wrong and what it must be.
+ * Empty strings count as unset, because that is how service files often blank a variable.
+ */
+export function readEnvironment(source: Record<string, string | undefined>): Environment {
+  const given = Object.fromEntries(Object.entries(source).filter(([, value]) => value !== undefined && value !== ''))
+  const result = schema.safeParse(given)
+  if (!result.success) {
+    const lines = result.error.issues.map(issue => `${String(issue.path[0])} ${issue.code === 'invalid_type' ? 'is missing or of the wrong kind' : issue.message}`)
+    throw new Error(`Setting not usable: ${lines.join('; ')}.`)
+  }
+  const values = result.data
+  return { ...values, PUBLIC_URL: (values.PUBLIC_URL ?? `http://${values.HOST}:${values.PORT}`).replace(/\/$/, '') }
+}
