@@ -1,0 +1,23 @@
+import { mean } from './mean'
+import { requireFinite } from './requireFinite'
+
+/**
+ * Deviations from the mean; exact zeros for a constant record, whose mean need not be a representable number.
+ *
+ * @param x length >= 1, finite
+ * @param name for the message
+ * @returns new array, length of x
+ * @throws RangeError when x is empty or has a value that is not finite
+ * Source: definition. Reference: through autocorrelation.
+ */
+export function deviations(x: Float64Array, name: string): Float64Array {
+  requireFinite(x, name)
+  const out = new Float64Array(x.length)
+  const first = x[0]
+  let i = 1
+  while (i < x.length && x[i] === first) i++
+  if (i === x.length) return out
+  const m = mean(x)
+  for (i = 0; i < x.length; i++) out[i] = x[i] - m
+  return out
+}

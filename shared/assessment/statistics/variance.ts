@@ -1,0 +1,25 @@
+import { mean } from './mean'
+
+/**
+ * Variance about the mean, two-pass with the residual-sum correction.
+ *
+ * @param x length > freedomLost, finite numbers (a NaN makes the result NaN)
+ * @param freedomLost subtracted from n in the divisor: 1 sample variance (default), 0 mean square about the mean
+ * @returns variance >= 0, square of the unit of x
+ * @throws RangeError when x is too short for the divisor
+ * Source: Chan, Golub, LeVeque (1983) Algorithms for computing the sample variance, The American Statistician
+ * 37:242-247, eq. 1.7. Reference: fixtures/reference/nist.json. Cost O(n).
+ */
+export function variance(x: Float64Array, freedomLost: 0 | 1 = 1): number {
+  const n = x.length
+  if (n <= freedomLost) throw new RangeError(`variance with divisor n - ${freedomLost} needs more than ${freedomLost} values, got ${n}`)
+  const m = mean(x)
+  let squares = 0
+  let rest = 0
+  for (let i = 0; i < n; i++) {
+    const d = x[i] - m
+    squares += d * d
+    rest += d
+  }
+  return Math.max(0, squares - rest * rest / n) / (n - freedomLost)
+}
