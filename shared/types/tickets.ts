@@ -1,0 +1,66 @@
+import type { EvidenceItem, Verdict } from '../assessment/types'
+
+export const TICKET_STATES = ['open', 'assigned', 'inWork', 'toVerify', 'closed', 'dropped'] as const
+export type TicketState = typeof TICKET_STATES[number]
+
+export const OUTCOMES = ['retuned', 'valveRepaired', 'sensorRepaired', 'processChanged', 'workedAround', 'notAProblem'] as const
+export type Outcome = typeof OUTCOMES[number]
+
+export const STATE_WORDS: Record<TicketState, string> = {
+  open: 'open', assigned: 'assigned', inWork: 'in work', toVerify: 'to verify', closed: 'closed', dropped: 'dropped',
+}
+export const OUTCOME_WORDS: Record<Outcome, string> = {
+  retuned: 'retuned', valveRepaired: 'valve repaired', sensorRepaired: 'sensor repaired', processChanged: 'process changed',
+  workedAround: 'worked around', notAProblem: 'not a problem',
+}
+
+/** What was known about a loop when the ticket was opened; kept as it was, whatever is assessed later. */
+export interface KeptEvidence {
+  tag: string
+  week: string
+  verdict: Verdict
+  confidence: number | null
+  lostHours: number
+  ribbon: string
+  reason: string
+  evidence: EvidenceItem[]
+}
+
+/** An estimate with its 95 % interval. */
+export interface Interval { value: number, low: number, high: number }
+
+export const PROOF_VERDICTS = ['better', 'noChange', 'worse', 'cannotTell'] as const
+export type ProofVerdict = typeof PROOF_VERDICTS[number]
+
+export interface ProofWindow { fromMs: number, toMs: number }
+
+export interface ProofCheck { name: string, ok: boolean, text: string }
+
+export interface LoopProof {
+  tag: string
+  verdict: ProofVerdict
+  /** one sentence */
+  reason: string
+  /** until one more comparable week has come in */
+  provisional: boolean
+  before: ProofWindow
+  after: ProofWindow
+  /** after / before; below 1 is better. null where it cannot be told */
+  iaeRatio: Interval | null
+  varianceRatio: Interval | null
+  /** before - after, hours a week; above 0 is better */
+  lostHoursWonPerWeek: Interval | null
+  checks: ProofCheck[]
+  method: string
+  source: string
+  samplesBefore: number
+  samplesAfter: number
+  blockLength: number | null
+  seed: number
+}
+
+export interface TicketProof {
+  verdict: ProofVerdict
+  provisional: boolean
+  loops: LoopProof[]
+}
