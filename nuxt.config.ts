@@ -21,6 +21,7 @@ export default defineNuxtConfig({
   tailwindcss: { cssPath: '~/assets/css/tailwind.css', viewer: false },
   nitro: {
     sourceMap: false,
+    errorHandler: '~~/server/error.ts',
     esbuild: { options: { target: 'es2022' } },
     // The sealed cookie carries only the id of a row in `sessions`; see server/utils/session.ts.
     experimental: { asyncContext: false },

@@ -119,6 +119,11 @@ export async function listTicketEvents(db: Database, ticketId: number): Promise<
   return rows.map(r => ({ id: r.id, at: r.at, userId: r.user_id, actor: r.actor, kind: r.kind, text: r.text, data: r.data }))
 }
 
+export async function countTicketEvents(db: Database, ticketId: number): Promise<number> {
+  const row = await db('ticket_events').where({ ticket_id: ticketId }).count({ count: '*' }).first()
+  return Number(row?.count ?? 0)
+}
+
 export async function setWatching(trx: Database, ticketId: number, userId: number, watching: boolean): Promise<void> {
   if (watching) await trx('ticket_watchers').insert({ ticket_id: ticketId, user_id: userId }).onConflict().ignore()
   else await trx('ticket_watchers').where({ ticket_id: ticketId, user_id: userId }).delete()
