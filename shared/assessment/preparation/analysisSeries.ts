@@ -10,6 +10,8 @@
  */
 import { AT_HIGH, AT_LOW, FROZEN, OFF_NORMAL, SHORT_GAP_INTERVALS, type PreparedRecord } from './prepareRecord'
 
+const GAP_BLOCKS = 64
+
 export interface AnalysisSeries {
   intervalS: number
   /** native slots in a block */
@@ -38,8 +40,11 @@ export function analysisSeries(prepared: PreparedRecord, settlingS: number, opti
   const factor = options.factor ?? Math.max(1, Math.floor(settlingS / 30 / prepared.intervalS + 1e-9) || 1)
   const minimum = options.minimum ?? 20
   const drop = OFF_NORMAL | FROZEN | (options.keepLimits ? 0 : AT_LOW | AT_HIGH)
+  const blockMs = factor * prepared.intervalS * 1000
+  // a long gap stands in the series as empty blocks, at most GAP_BLOCKS of them: an index is no clock across it
+  const gapBlocks = prepared.stretches.map((s, k) => k === 0 ? 0 : Math.max(SHORT_GAP_INTERVALS + 1, Math.min(GAP_BLOCKS, Math.round((prepared.t[s.begin] - prepared.t[s.begin - 1]) / blockMs))))
   let blocks = 0
-  for (const s of prepared.stretches) blocks += Math.floor((s.end - s.begin) / factor)
+  prepared.stretches.forEach((s, k) => { blocks += gapBlocks[k] + Math.floor((s.end - s.begin) / factor) })
 
   const { pv, sp, op, error, flags } = prepared
   const t = new Float64Array(blocks)
@@ -50,7 +55,15 @@ export function analysisSeries(prepared: PreparedRecord, settlingS: number, opti
   const breaks: number[] = []
   const need = Math.max(1, factor / 2)
   let b = 0
-  for (const s of prepared.stretches) {
+  for (let k = 0; k < prepared.stretches.length; k++) {
+    const s = prepared.stretches[k]
+    for (let g = 0; g < gapBlocks[k]; g++, b++) {
+      t[b] = prepared.t[s.begin - 1] + (g + 1) * prepared.intervalS * 1000
+      bPv[b] = NaN
+      if (bOp) bOp[b] = NaN
+      if (bSp) bSp[b] = NaN
+      if (bError) bError[b] = NaN
+    }
     breaks.push(b)
     const m = Math.floor((s.end - s.begin) / factor)
     for (let j = 0; j < m; j++, b++) {
