@@ -1,0 +1,11 @@
+import { z } from 'zod'
+import { sendDigest } from '../../services/digest/sendDigest'
+
+const body = z.object({ week: z.string().regex(/^\d{4}-W\d{2}$/) })
+
+export default defineEventHandler(async (event) => {
+  const caller = await requireRole(event, 'engineer')
+  const { week } = await readInput(event, body)
+  const now = new Date()
+  return sendDigest(database(), { week, dueAt: now, publicUrl: environment().PUBLIC_URL, now, by: caller })
+})

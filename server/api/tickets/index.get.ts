@@ -1,0 +1,8 @@
+import { listTicketsSchema } from '../../../shared/schemas/tickets'
+import { listTickets } from '../../../db/repositories/tickets'
+
+export default defineEventHandler(async (event) => {
+  const caller = await requireRole(event, 'viewer', 'read')
+  const { state, assignee, loop, ...rest } = await readInput(event, listTicketsSchema, 'query')
+  return listTickets(database(), { ...rest, states: state, loopTag: loop, assigneeId: assignee === 'me' ? caller.userId ?? undefined : assignee })
+})

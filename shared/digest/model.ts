@@ -1,0 +1,25 @@
+import type { Verdict } from '../assessment/types'
+
+export interface DigestLoop { tag: string, description: string, area: string, ribbon: string, lostHours: number, change: number | null, verdict: Verdict, confidence: number | null }
+export interface DigestTicket { id: number, title: string, state: string, dueOn: string | null, assignee: string | null, overdue: boolean }
+export interface DigestWin { ticketId: number, title: string, hoursPerWeek: number, provisional: boolean, outcome: string }
+
+/** What one person's digest of a week says. */
+export interface DigestModel {
+  siteName: string
+  week: string
+  zone: string
+  /** areas followed, or empty for all */
+  areas: string[]
+  loops: number
+  lostHours: number
+  lostHoursBefore: number | null
+  byState: { state: string, hours: number }[]
+  /** at most ten, new or worse than the week before, worst first */
+  worst: DigestLoop[]
+  better: DigestLoop[]
+  groups: { letter: string, periodS: number, members: number, source: string | null }[]
+  tickets: DigestTicket[]
+  wins: DigestWin[]
+  publicUrl: string
+}

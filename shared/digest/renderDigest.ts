@@ -1,0 +1,94 @@
+import { LEDGER_STATES, RIBBON_LETTERS } from '../assessment/types'
+import { formatDuration } from '../format/duration'
+import { formatWeek } from '../format/date'
+import { VERDICT_WORDS } from '../format/words'
+import { coarseRibbon } from './coarseRibbon'
+import type { DigestLoop, DigestModel } from './model'
+
+const escape = (text: string) => text.replace(/&/g, '&amp;').replace(/</g, '&lt;').replace(/>/g, '&gt;').replace(/"/g, '&quot;')
+
+/**
+ * Colours of the cells. Every lost state also carries its letter, so that the ribbon reads in black and white; text on
+ * each colour keeps its contrast when a mail program darkens only the page around it.
+ */
+const cell: Record<string, { ground: string, ink: string, mark: string }> = {
+  noData: { ground: '#FFFFFF', ink: '#57616A', mark: '·' }, down: { ground: '#D5D3CC', ink: '#1D2329', mark: '×' },
+  sensor: { ground: '#2F7DA3', ink: '#FFFFFF', mark: 'x' }, manual: { ground: '#5F6B77', ink: '#FFFFFF', mark: 'm' },
+  saturated: { ground: '#B5482F', ink: '#FFFFFF', mark: 'u' }, hunting: { ground: '#6D4BA6', ink: '#FFFFFF', mark: 'h' },
+  offTarget: { ground: '#D39A2E', ink: '#1D2329', mark: 'o' }, steady: { ground: '#DFE5E0', ink: '#1D2329', mark: '' },
+}
+const stateOfLetter = new Map(LEDGER_STATES.map(state => [RIBBON_LETTERS[state], state]))
+
+/** The ribbon as plain table cells, 28 of a quarter of a day each, a thin gap at midnight. */
+export function ribbonCells(ribbon: string): string {
+  const cells = [...coarseRibbon(ribbon)].map((letter, index) => {
+    const { ground, ink, mark } = cell[stateOfLetter.get(letter)!]!
+    const midnight = index % 4 === 0 && index > 0 ? 'border-left:2px solid #ffffff;' : ''
+    return `<td width="9" height="16" align="center" bgcolor="${ground}" style="width:9px;height:16px;background:${ground};color:${ink};${midnight}font:9px/16px Arial,sans-serif;padding:0">${mark || '&nbsp;'}</td>`
+  }).join('')
+  return `<table role="presentation" cellpadding="0" cellspacing="0" border="0" style="border-collapse:collapse"><tr>${cells}</tr></table>`
+}
+
+const signed = (n: number) => (n > 0 ? `+${n}` : n < 0 ? `−${-n}` : '±0')
+const plural = (n: number, one: string, many = `${one}s`) => `${n} ${n === 1 ? one : many}`
+
+/** The one sentence on top. */
+export function digestSentence(m: DigestModel): string {
+  const where = m.areas.length ? ` in ${m.areas.join(', ')}` : ''
+  if (m.loops === 0) return `No loop was assessed${where} in this week.`
+  const change = m.lostHoursBefore === null ? '' : m.lostHours === m.lostHoursBefore ? ', as many as the week before' : `, ${Math.abs(m.lostHours - m.lostHoursBefore)} ${m.lostHours < m.lostHoursBefore ? 'fewer' : 'more'} than the week before`
+  const most = m.byState.filter(s => s.hours > 0).sort((a, b) => b.hours - a.hours)[0]
+  const mostly = most ? `; most of them (${most.hours}) to ${stateWords[most.state] ?? most.state}` : ''
+  return `${plural(m.loops, 'loop')}${where} lost ${m.lostHours} loop-hours${change}${mostly}.`
+}
+
+const stateWords: Record<string, string> = { manual: 'manual mode', saturated: 'limits', hunting: 'hunting', offTarget: 'being off target', sensor: 'doubtful sensors' }
+
+function loopTextLine(l: DigestLoop): string {
+  const sure = l.confidence === null ? '' : ` (${Math.round(l.confidence * 100)} % sure)`
+  return `  ${l.tag}  ${l.lostHours} h lost${l.change === null ? '' : ` (${signed(l.change)})`}  ${VERDICT_WORDS[l.verdict]}${sure}\n    ${[l.description, l.area].filter(Boolean).join(', ')}\n    ${coarseRibbon(l.ribbon).replace(/(.{4})(?=.)/g, '$1 ')}`
+}
+
+const INK = '#1D2329'
+const QUIET = '#57616A'
+
+export interface RenderedDigest { subject: string, text: string, html: string }
+
+/** The digest as HTML and as full text; both say the same. `unsubscribeUrl` opens a page that asks; it never unsubscribes by itself. */
+export function renderDigest(m: DigestModel, unsubscribeUrl: string): RenderedDigest {
+  const sentence = digestSentence(m)
+  const url = (path: string) => `${m.publicUrl}${path}`
+  const loopsUrl = url(`/loops?week=${m.week}`)
+  const due = m.tickets.map(t => `#${t.id} ${t.title}, ${t.state}${t.dueOn ? `, due ${t.dueOn}${t.overdue ? ' (overdue)' : ''}` : ''}${t.assignee ? `, ${t.assignee}` : ''}`)
+  const wins = m.wins.map(w => `#${w.ticketId} ${w.title}: ${w.hoursPerWeek.toFixed(0)} h a week won back (${w.outcome}${w.provisional ? ', provisional' : ''})`)
+  const groups = m.groups.map(g => `Group ${g.letter}: ${g.members} loops hunt together with a period of ${formatDuration(g.periodS)}${g.source ? `; the likely source is ${g.source}` : ''}.`)
+
+  const text = [
+    `${m.siteName}: ${formatWeek(m.week)}`, '', sentence, '',
+    ...(m.worst.length ? ['New or worse', ...m.worst.map(loopTextLine), '  h hunting  o off target  m manual  u at a limit  x sensor  s steady  d down  . no data', ''] : ['No loop became worse.', '']),
+    ...(m.better.length ? ['Better than the week before', ...m.better.map(loopTextLine), ''] : []),
+    ...(groups.length ? ['Hunting together', ...groups.map(g => `  ${g}`), ''] : []),
+    ...(due.length ? ['Tickets due', ...due.map(t => `  ${t}`), ''] : []),
+    ...(wins.length ? ['Proven', ...wins.map(w => `  ${w}`), ''] : []),
+    `All loops: ${loopsUrl}`, '', `You get this mail because you follow ${m.areas.length ? m.areas.join(', ') : 'all areas'}. To stop it: ${unsubscribeUrl}`, '',
+  ].join('\n')
+
+  const heading = (words: string) => `<h2 style="font:600 14px/20px Arial,sans-serif;color:${QUIET};margin:22px 0 6px">${words}</h2>`
+  const loopRow = (l: DigestLoop) => `<tr><td style="padding:6px 10px 6px 0;border-top:1px solid #DAD8D2;vertical-align:top"><a href="${escape(url(`/loops/${encodeURIComponent(l.tag)}?week=${m.week}`))}" style="color:#0F5C63;font-weight:bold;text-decoration:none;white-space:nowrap">${escape(l.tag)}</a><br><span style="color:${QUIET};font-size:12px">${escape(l.description)}</span></td><td style="padding:8px 10px 6px 0;border-top:1px solid #DAD8D2;vertical-align:top">${ribbonCells(l.ribbon)}<span style="font-size:12px;color:${QUIET}">${escape(VERDICT_WORDS[l.verdict])}${l.confidence === null ? '' : `, ${Math.round(l.confidence * 100)} % sure`}</span></td><td align="right" style="padding:6px 0;border-top:1px solid #DAD8D2;vertical-align:top;white-space:nowrap"><b>${l.lostHours} h</b><br><span style="color:${QUIET};font-size:12px">${l.change === null ? '' : signed(l.change)}</span></td></tr>`
+  const table = (loops: DigestLoop[]) => `<table role="presentation" width="100%" cellpadding="0" cellspacing="0" style="border-collapse:collapse">${loops.map(loopRow).join('')}</table>`
+  const list = (lines: string[]) => lines.map(line => `<p style="margin:0 0 6px">${escape(line)}</p>`).join('')
+  const html = `<!doctype html><html lang="en"><head><meta charset="utf-8"><meta name="viewport" content="width=device-width"><meta name="color-scheme" content="light dark"><title>${escape(m.siteName)}</title></head>
+<body style="margin:0;background:#F6F5F2"><div style="max-width:640px;margin:0 auto;padding:20px;background:#FFFFFF;color:${INK};font:14px/20px Arial,sans-serif">
+<p style="margin:0;color:${QUIET}">${escape(m.siteName)}, ${escape(formatWeek(m.week))}</p>
+<h1 style="font:600 20px/28px Arial,sans-serif;margin:6px 0 10px;color:${INK}">${escape(sentence)}</h1>
+${m.worst.length ? heading('New or worse') + table(m.worst) : '<p>No loop became worse.</p>'}
+${m.better.length ? heading('Better than the week before') + table(m.better) : ''}
+<p style="color:${QUIET};font-size:12px;margin:8px 0 0">Each strip is a week in quarters of a day: h hunting, o off target, m manual, u at a limit, x sensor, blank steady, × down, · no data.</p>
+${groups.length ? heading('Hunting together') + list(groups) : ''}
+${due.length ? heading('Tickets due') + list(due) : ''}
+${wins.length ? heading('Proven') + list(wins) : ''}
+<p style="margin:22px 0 0"><a href="${escape(loopsUrl)}" style="color:#0F5C63">All loops of the week</a></p>
+<p style="margin:18px 0 0;color:${QUIET};font-size:12px">You get this mail because you follow ${escape(m.areas.length ? m.areas.join(', ') : 'all areas')}. <a href="${escape(unsubscribeUrl)}" style="color:${QUIET}">Stop it</a>.</p>
+</div></body></html>`
+  return { subject: `${m.siteName}, week ${Number(m.week.slice(6))}: ${m.lostHours} loop-hours lost${m.lostHoursBefore === null ? '' : ` (${signed(m.lostHours - m.lostHoursBefore)})`}`, text, html }
+}
