@@ -1,0 +1,128 @@
+import { fft } from '../spectrum/fft'
+
+export interface SpectralPeak {
+  /** cycles per sample */
+  frequency: number
+  /** how far above its limit, in natural logarithms, weighted by the square root of the segments; > 0 */
+  score: number
+}
+
+/** Cycles in a segment between which a peak is looked for; each period is thus seen at two segment lengths. */
+const FEWEST_CYCLES = 6
+const MOST_CYCLES = 24
+/** A peak must stand this far above its surroundings however long the average: a resonance damped by less than about 0.25. */
+const LOWEST_RATIO = Math.log(7)
+/** Normal quantile by which short averages must exceed a part of that ratio, because a single look is exponentially distributed. */
+const QUANTILE = 4
+/** Two peaks nearer than this (logarithm of the ratio) are one unless a dip lies between them. */
+const NEAR = 0.6
+
+/**
+ * Spectral peaks that stand above both sides of their surroundings, at several segment lengths and in averages of 1, 2, 4, …
+ * up to all segments, so that a short stretch of hunting is found as well as a weak lasting one.
+ *
+ * Takes the differences of the signal: then a random walk is flat and a step is one sample. The background at bin k is the
+ * mean of the logarithms over both sides (k/2 to k, k to 2k), which leaves any power-law slope without effect.
+ * @param steps differences, 0 where missing, length n
+ * @param present 1 where the sample is there, length n
+ * @param highestPeriod samples
+ * @returns strongest first, at least 15 % apart, at most 8
+ * Cost O(n log n). Source: Welch 1967 for the averaging; the rule for a peak is ours, its limits are checked on noise.
+ */
+export function spectralPeaks(steps: Float64Array, present: Uint8Array, highestPeriod: number): SpectralPeak[] {
+  const found: SpectralPeak[] = []
+  const averages: Average[] = []
+  for (let length = 64; length <= steps.length; length *= 2) {
+    if (length / MOST_CYCLES > highestPeriod) break
+    averages.push(searchLength(steps, present, length, highestPeriod, found))
+  }
+  found.sort((a, b) => b.score - a.score)
+  const kept: SpectralPeak[] = []
+  for (const peak of found) {
+    if (kept.length === 8) break
+    if (kept.every(other => areApart(peak.frequency, other.frequency, averages))) kept.push(peak)
+  }
+  return kept
+}
+
+/** Mean spectrum over the whole record at one segment length. */
+interface Average { length: number, power: Float64Array, segments: number }
+
+/** Whether a dip lies between two frequencies, deeper than chance makes in a smooth peak. */
+function areApart(one: number, other: number, averages: Average[]): boolean {
+  const distance = Math.abs(Math.log(one / other))
+  if (distance > NEAR) return true
+  if (distance < 0.15) return false
+  const low = Math.min(one, other), high = Math.max(one, other)
+  const average = averages.findLast(a => high * a.length < a.power.length - 1)
+  if (!average) return false
+  const { length, power, segments } = average
+  const at = (frequency: number) => { const k = Math.round(frequency * length); return Math.max(power[k - 1], power[k], power[k + 1]) }
+  let dip = Infinity
+  for (let k = Math.round(low * length) + 1; k < Math.round(high * length); k++) dip = Math.min(dip, power[k])
+  return Math.log(Math.min(at(low), at(high)) / dip) > Math.log(4) + 3 * Math.sqrt(2 / segments)
+}
+
+function searchLength(steps: Float64Array, present: Uint8Array, length: number, highestPeriod: number, found: SpectralPeak[]): Average {
+  const first = Math.max(FEWEST_CYCLES, Math.ceil(length / highestPeriod))
+  const last = Math.min(MOST_CYCLES, length >> 2)
+  const bins = Math.min(2 * last, length >> 1) + 1
+  const window = new Float64Array(length)
+  for (let i = 0; i < length; i++) window[i] = 0.5 - 0.5 * Math.cos(2 * Math.PI * (i + 0.5) / length)
+  const segment = new Float64Array(length), spectrum = new Float64Array(2 * length)
+  const transform = fft(length)
+  const hop = length >> 1
+  const segments = Math.floor((steps.length - length) / hop) + 1
+  // Running sums over the segments: any average is one difference.
+  const sums = new Float64Array((segments + 1) * bins)
+  const used = new Int32Array(segments + 1)
+  for (let j = 0; j < segments; j++) {
+    // The last segment ends with the record.
+    const from = j === segments - 1 ? steps.length - length : j * hop
+    let there = 0, mean = 0
+    for (let i = 0; i < length; i++) { there += present[from + i]; mean += steps[from + i] }
+    mean /= length
+    const good = there > 0.7 * length
+    used[j + 1] = used[j] + (good ? 1 : 0)
+    if (good) {
+      for (let i = 0; i < length; i++) segment[i] = (steps[from + i] - mean) * window[i]
+      transform.forward(segment, spectrum)
+    }
+    for (let k = 0; k < bins; k++) {
+      sums[(j + 1) * bins + k] = sums[j * bins + k] + (good ? spectrum[2 * k] ** 2 + spectrum[2 * k + 1] ** 2 : 0)
+    }
+  }
+  const power = new Float64Array(bins), logs = new Float64Array(bins + 1)
+  for (let width = 1; ; width = Math.min(2 * width, segments)) {
+    const stride = Math.max(1, width >> 1)
+    for (let from = 0; from + width <= segments; from += stride) {
+      const m = used[from + width] - used[from]
+      if (m < width / 2) continue
+      let floor = 0
+      for (let k = 1; k < bins; k++) {
+        power[k] = sums[(from + width) * bins + k] - sums[from * bins + k]
+        floor += power[k]
+      }
+      if (!(floor > 0)) continue
+      // Rounding of the running sums must not pass for an empty spectrum.
+      floor = Math.max(floor, sums[(from + width) * bins + bins - 1]) * 1e-13
+      for (let k = 1; k < bins; k++) logs[k + 1] = logs[k] + Math.log(Math.max(power[k], floor))
+      const limit = LOWEST_RATIO + 3 * Math.log(1 - 1 / (9 * m) + QUANTILE / (3 * Math.sqrt(m))) + 1 / (2 * m) + 1 / (12 * m * m)
+      for (let k = first; k <= last; k++) {
+        if (!(power[k] > power[k - 1] && power[k] >= power[k + 1])) continue
+        const away = Math.max(2, Math.round(0.2 * k))
+        const below = Math.max(1, Math.floor(k / 2)), above = Math.min(bins - 1, 2 * k)
+        if (k + away >= above) continue
+        const lower = (logs[k - away + 1] - logs[below]) / (k - away + 1 - below)
+        const upper = (logs[above + 1] - logs[k + away]) / (above + 1 - k - away)
+        const here = logs[k + 1] - logs[k]
+        const excess = here - 0.5 * (lower + upper) - limit
+        if (excess <= 0) continue
+        const left = logs[k] - logs[k - 1], right = logs[k + 2] - logs[k + 1]
+        const shift = k + 1 < bins ? 0.5 * (left - right) / (left - 2 * here + right) : 0
+        found.push({ frequency: (k + (Number.isFinite(shift) ? shift : 0)) / length, score: excess * Math.sqrt(m) })
+      }
+    }
+    if (width === segments) return { length, power: power.slice(), segments: Math.max(1, used[segments]) }
+  }
+}
