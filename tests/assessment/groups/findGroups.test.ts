@@ -1,0 +1,126 @@
+import { describe, expect, it } from 'vitest'
+import { demodulate } from '../../../shared/assessment/groups/demodulate'
+import { findGroups, type GroupCandidate } from '../../../shared/assessment/groups/findGroups'
+import { phaseCoherence } from '../../../shared/assessment/groups/phaseCoherence'
+import { rankSources } from '../../../shared/assessment/groups/rankSources'
+import { seededRandom } from '../../../shared/assessment/statistics/seededRandom'
+
+const DT = 30
+const N = 7 * 24 * 3600 / DT
+const span = { fromMs: 0, toMs: N * DT * 1000 }
+
+/** A wave whose phase wanders, as any limit cycle's does: a random walk of `wander` rad per period. */
+function wanderingPhase(seed: number, periodS: number, wander: number): Float64Array {
+  const random = seededRandom(seed)
+  const phase = new Float64Array(N)
+  let drift = 0
+  for (let k = 0; k < N; k++) {
+    drift += random.normal() * wander * Math.sqrt(DT / periodS)
+    phase[k] = 2 * Math.PI * k * DT / periodS + drift
+  }
+  return phase
+}
+function loop(tag: string, phase: Float64Array, lagS: number, periodS: number, seed: number, more: Partial<GroupCandidate> = {}): GroupCandidate {
+  const random = seededRandom(seed)
+  const series = Float64Array.from(phase, (p) => Math.sin(p - 2 * Math.PI * lagS / periodS) + 0.3 * random.normal())
+  return { tag, series, t0Ms: 0, sampleIntervalS: DT, periodS, periodSdS: periodS * 0.01, strength: 0.8, valveEvidence: 0, nonlinearity: null, upstream: [], ...more }
+}
+
+describe('demodulate', () => {
+  it('gives amplitude and phase of a sine: closed form A cos(wt + phi) -> A exp(i phi)', () => {
+    const periodS = 600
+    const x = Float64Array.from({ length: N }, (_, k) => 2.5 * Math.cos(2 * Math.PI * k * DT / periodS + 0.7))
+    const { re, im } = demodulate(x, { t0Ms: 0, sampleIntervalS: DT, periodS, originMs: 0, windowS: 2400, windows: 50 })
+    for (let w = 0; w < 50; w++) {
+      expect(Math.hypot(re[w], im[w])).toBeCloseTo(2.5, 6)
+      expect(Math.atan2(im[w], re[w])).toBeCloseTo(0.7, 6)
+    }
+  })
+  it('does not depend on where the record begins', () => {
+    const periodS = 600
+    const x = Float64Array.from({ length: N }, (_, k) => Math.cos(2 * Math.PI * k * DT / periodS))
+    const whole = demodulate(x, { t0Ms: 0, sampleIntervalS: DT, periodS, originMs: 0, windowS: 2400, windows: 20 })
+    const later = demodulate(x.slice(70), { t0Ms: 70 * DT * 1000, sampleIntervalS: DT, periodS, originMs: 0, windowS: 2400, windows: 20 })
+    expect(later.re[0]).toBeNaN()
+    for (let w = 1; w < 20; w++) expect(later.re[w]).toBeCloseTo(whole.re[w], 9)
+  })
+  it('leaves windows with too many gaps out, and refuses a period below four samples', () => {
+    const x = new Float64Array(N).fill(NaN, 0, 100)
+    const { re } = demodulate(x, { t0Ms: 0, sampleIntervalS: DT, periodS: 600, originMs: 0, windowS: 2400, windows: 3 })
+    expect(re[0]).toBeNaN()
+    expect(re[2]).toBe(0)
+    expect(() => demodulate(x, { t0Ms: 0, sampleIntervalS: DT, periodS: 90, originMs: 0, windowS: 2400, windows: 3 })).toThrow(/below 4 samples/)
+  })
+})
+
+describe('phaseCoherence', () => {
+  it('is 1 for the same wave and tells the lag of the second behind the first', () => {
+    const periodS = 600
+    const wave = (lagS: number) => demodulate(Float64Array.from({ length: N }, (_, k) => Math.sin(2 * Math.PI * (k * DT - lagS) / periodS)), { t0Ms: 0, sampleIntervalS: DT, periodS, originMs: 0, windowS: 2400, windows: 100 })
+    const { coherence, lagS } = phaseCoherence(wave(0), wave(75), periodS)
+    expect(coherence).toBeCloseTo(1, 9)
+    expect(lagS).toBeCloseTo(75, 6)
+  })
+  it('has the published distribution under independence: P(c^2 > x) = (1 - x)^(K-1) (Goodman 1957)', () => {
+    const random = seededRandom(5)
+    const draw = (k: number) => ({ re: Float64Array.from({ length: k }, () => random.normal()), im: Float64Array.from({ length: k }, () => random.normal()) })
+    let below = 0
+    for (let run = 0; run < 4000; run++) if (phaseCoherence(draw(12), draw(12), 1).chance < 0.05) below++
+    expect(below / 4000).toBeGreaterThan(0.04)
+    expect(below / 4000).toBeLessThan(0.06)
+  })
+})
+
+describe('findGroups', () => {
+  it('finds the loops of one wave with their lags, and leaves a loop of another period alone', () => {
+    const common = wanderingPhase(1, 1200, 0.2)
+    const groups = findGroups([
+      loop('A', common, 0, 1200, 11, { strength: 0.95, nonlinearity: 12 }), loop('B', common, 100, 1215, 12), loop('C', common, 300, 1190, 13),
+      loop('D', wanderingPhase(2, 400, 0.2), 0, 400, 14),
+    ], span)
+    expect(groups).toHaveLength(1)
+    expect(groups[0].members.map(m => m.tag).sort()).toEqual(['A', 'B', 'C'])
+    expect(groups[0].likelySource).toBe('A')
+    const lag = (tag: string) => groups[0].members.find(m => m.tag === tag)!.lagS
+    expect(lag('A')).toBe(0)
+    expect(Math.abs(lag('B') - 100)).toBeLessThan(25)
+    expect(Math.abs(lag('C') - 300)).toBeLessThan(25)
+  })
+  it('does not group independent loops whose periods agree by chance: below 5 % of 100 pairs', () => {
+    let grouped = 0
+    for (let run = 0; run < 100; run++) {
+      const found = findGroups([loop('A', wanderingPhase(run * 2 + 100, 900, 0.3), 0, 900, run + 1000), loop('B', wanderingPhase(run * 2 + 101, 905, 0.3), 0, 905, run + 2000)], span)
+      if (found.length) grouped++
+    }
+    expect(grouped).toBeLessThan(5)
+  })
+  it('answers nothing on nothing, on one loop and on a span of a few cycles', () => {
+    expect(findGroups([], span)).toEqual([])
+    expect(findGroups([loop('A', wanderingPhase(1, 900, 0.1), 0, 900, 1)], span)).toEqual([])
+    const common = wanderingPhase(1, 1200, 0.1)
+    expect(findGroups([loop('A', common, 0, 1200, 1), loop('B', common, 0, 1200, 2)], { fromMs: 0, toMs: 3 * 1200 * 1000 })).toEqual([])
+  })
+  it('leaves its inputs alone', () => {
+    const a = loop('A', wanderingPhase(1, 900, 0.1), 0, 900, 1)
+    const before = a.series.slice()
+    findGroups([a, loop('B', wanderingPhase(1, 900, 0.1), 50, 900, 2)], span)
+    expect(a.series).toEqual(before)
+  })
+})
+
+describe('rankSources', () => {
+  const plain = { strength: 0.5, lagS: 0, valveEvidence: 0, nonlinearity: null, upstream: [] as string[] }
+  it('puts the most nonlinear loop first (Thornhill 2005), and says so', () => {
+    const [first] = rankSources([{ ...plain, tag: 'A', nonlinearity: 3 }, { ...plain, tag: 'B', nonlinearity: 15 }], 100)
+    expect(first.tag).toBe('B')
+    expect(first.reasons.join()).toContain('least sine-like')
+  })
+  it('puts a declared upstream loop before the ones it feeds, all else equal, through links of links', () => {
+    const ranking = rankSources([{ ...plain, tag: 'C', lagS: 20, upstream: ['B'] }, { ...plain, tag: 'B', lagS: 10, upstream: ['A'] }, { ...plain, tag: 'A' }], 100)
+    expect(ranking.map(r => r.tag)[0]).toBe('A')
+    expect(ranking.map(r => r.tag)[2]).toBe('C')
+  })
+  it('does not hang on links in a circle', () => {
+    expect(rankSources([{ ...plain, tag: 'A', upstream: ['B'] }, { ...plain, tag: 'B', upstream: ['A'] }], 100)).toHaveLength(2)
+  })
+})
