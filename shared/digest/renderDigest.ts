@@ -1,33 +1,30 @@
-import { LEDGER_STATES, RIBBON_LETTERS } from '../assessment/types'
+import { RIBBON_LETTERS } from '../assessment/types'
 import { formatDuration } from '../format/duration'
 import { formatWeek } from '../format/date'
 import { VERDICT_WORDS } from '../format/words'
-import { coarseRibbon } from './coarseRibbon'
+import { coarseCells } from '../ribbon/coarseCells'
+import { STATE_COLOURS } from '../ribbon/colours'
 import type { DigestLoop, DigestModel } from './model'
 
 const escape = (text: string) => text.replace(/&/g, '&amp;').replace(/</g, '&lt;').replace(/>/g, '&gt;').replace(/"/g, '&quot;')
 
-/**
- * Colours of the cells. Every lost state also carries its letter, so that the ribbon reads in black and white; text on
- * each colour keeps its contrast when a mail program darkens only the page around it.
- */
-const cell: Record<string, { ground: string, ink: string, mark: string }> = {
-  noData: { ground: '#FFFFFF', ink: '#57616A', mark: '·' }, down: { ground: '#D5D3CC', ink: '#1D2329', mark: '×' },
-  sensor: { ground: '#2F7DA3', ink: '#FFFFFF', mark: 'x' }, manual: { ground: '#5F6B77', ink: '#FFFFFF', mark: 'm' },
-  saturated: { ground: '#B5482F', ink: '#FFFFFF', mark: 'u' }, hunting: { ground: '#6D4BA6', ink: '#FFFFFF', mark: 'h' },
-  offTarget: { ground: '#D39A2E', ink: '#1D2329', mark: 'o' }, steady: { ground: '#DFE5E0', ink: '#1D2329', mark: '' },
-}
-const stateOfLetter = new Map(LEDGER_STATES.map(state => [RIBBON_LETTERS[state], state]))
+const MARKS: Readonly<Record<string, string>> = { noData: '·', down: '×', steady: '' }
 
-/** The ribbon as plain table cells, 28 of a quarter of a day each, a thin gap at midnight. */
+/**
+ * The ribbon as plain table cells, 28 of a quarter of a day each, a gap at midnight. Every lost state also carries its
+ * letter, so that the ribbon reads in black and white and where a mail program darkens the page.
+ */
 export function ribbonCells(ribbon: string): string {
-  const cells = [...coarseRibbon(ribbon)].map((letter, index) => {
-    const { ground, ink, mark } = cell[stateOfLetter.get(letter)!]!
+  const cells = coarseCells(ribbon).map(({ state }, index) => {
+    const { fill, mark } = STATE_COLOURS.light[state]
+    const ground = fill ?? '#FFFFFF'
     const midnight = index % 4 === 0 && index > 0 ? 'border-left:2px solid #ffffff;' : ''
-    return `<td width="9" height="16" align="center" bgcolor="${ground}" style="width:9px;height:16px;background:${ground};color:${ink};${midnight}font:9px/16px Arial,sans-serif;padding:0">${mark || '&nbsp;'}</td>`
+    return `<td width="9" height="16" align="center" bgcolor="${ground}" style="width:9px;height:16px;background:${ground};color:${mark};${midnight}font:9px/16px Arial,sans-serif;padding:0">${(MARKS[state] ?? RIBBON_LETTERS[state]) || '&nbsp;'}</td>`
   }).join('')
   return `<table role="presentation" cellpadding="0" cellspacing="0" border="0" style="border-collapse:collapse"><tr>${cells}</tr></table>`
 }
+
+const coarseLetters = (ribbon: string) => coarseCells(ribbon).map(({ state }) => RIBBON_LETTERS[state]).join('').replace(/(.{4})(?=.)/g, '$1 ')
 
 const signed = (n: number) => (n > 0 ? `+${n}` : n < 0 ? `−${-n}` : '±0')
 const plural = (n: number, one: string, many = `${one}s`) => `${n} ${n === 1 ? one : many}`
@@ -46,7 +43,7 @@ const stateWords: Record<string, string> = { manual: 'manual mode', saturated: '
 
 function loopTextLine(l: DigestLoop): string {
   const sure = l.confidence === null ? '' : ` (${Math.round(l.confidence * 100)} % sure)`
-  return `  ${l.tag}  ${l.lostHours} h lost${l.change === null ? '' : ` (${signed(l.change)})`}  ${VERDICT_WORDS[l.verdict]}${sure}\n    ${[l.description, l.area].filter(Boolean).join(', ')}\n    ${coarseRibbon(l.ribbon).replace(/(.{4})(?=.)/g, '$1 ')}`
+  return `  ${l.tag}  ${l.lostHours} h lost${l.change === null ? '' : ` (${signed(l.change)})`}  ${VERDICT_WORDS[l.verdict]}${sure}\n    ${[l.description, l.area].filter(Boolean).join(', ')}\n    ${coarseLetters(l.ribbon)}`
 }
 
 const INK = '#1D2329'

@@ -1,26 +1,7 @@
 import { describe, expect, it } from 'vitest'
-import { coarseRibbon } from '../../shared/digest/coarseRibbon'
 import { digestDueAt } from '../../shared/digest/digestDueAt'
 import { digestSentence, renderDigest } from '../../shared/digest/renderDigest'
 import type { DigestModel } from '../../shared/digest/model'
-
-describe('coarseRibbon', () => {
-  it('draws a week as 28 cells of six hours', () => {
-    expect(coarseRibbon('s'.repeat(168))).toBe('s'.repeat(28))
-    expect(coarseRibbon(('s'.repeat(18) + 'h'.repeat(6)).repeat(7))).toBe('sssh'.repeat(7))
-  })
-  it('shows a lost state from two hours of six on, and the one with most hours', () => {
-    expect(coarseRibbon('hsssss'.repeat(28))).toBe('s'.repeat(28))
-    expect(coarseRibbon('hhssss'.repeat(28))).toBe('h'.repeat(28))
-    expect(coarseRibbon('hmmsss'.repeat(28))).toBe('m'.repeat(28))
-  })
-  it('draws weeks with a clock change and refuses letters that are none', () => {
-    expect(coarseRibbon('s'.repeat(167))).toHaveLength(28)
-    expect(coarseRibbon('o'.repeat(169))).toBe('o'.repeat(28))
-    expect(coarseRibbon('')).toBe('')
-    expect(() => coarseRibbon('q'.repeat(168))).toThrow(/not a letter/)
-  })
-})
 
 describe('digestDueAt', () => {
   // Offsets of Europe/London: GMT in winter, BST (UTC+1) in summer (tz database).
