@@ -10,10 +10,10 @@ pg.types.setTypeParser(1700, Number)
 export type Database = Knex | Knex.Transaction
 
 /** Opens a pool on a PostgreSQL URL. pg's `binary: true` is never used: it corrupts bytea results silently. */
-export function openDatabase(url: string, { poolSize = 8 }: { poolSize?: number } = {}): Knex {
+export function openDatabase(url: string, { poolSize = 8, name = 'fettle' }: { poolSize?: number, name?: string } = {}): Knex {
   return knex({
     client: 'pg',
-    connection: { connectionString: url, application_name: 'fettle' },
+    connection: { connectionString: url, application_name: name },
     pool: { min: 0, max: poolSize, acquireTimeoutMillis: 15_000 },
   })
 }

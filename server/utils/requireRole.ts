@@ -1,18 +1,9 @@
 import type { H3Event } from 'h3'
 import { getHeader } from 'h3'
-import { atLeast, type Role } from '../../shared/types/people'
+import { atLeast, type Caller, type Role } from '../../shared/types/people'
 import { personOfToken, type TokenScope } from '../services/tokens'
 import { personOfSession } from './session'
 import { refusal } from './refusal'
-
-export interface Caller {
-  /** null for a machine */
-  userId: number | null
-  tokenId: number | null
-  name: string
-  email: string
-  role: Role
-}
 
 /**
  * Who calls, or a refusal: 401 when nobody, 403 when the role (or the token's scope) does not reach.

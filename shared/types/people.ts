@@ -5,3 +5,13 @@ export type Role = typeof ROLES[number]
 export const atLeast = (role: Role, needed: Role): boolean => ROLES.indexOf(role) >= ROLES.indexOf(needed)
 
 export interface Person { id: number, email: string, name: string, role: Role }
+
+/** Who calls a route: a person, or a machine by its token. */
+export interface Caller {
+  /** null for a machine */
+  userId: number | null
+  tokenId: number | null
+  name: string
+  email: string
+  role: Role
+}
