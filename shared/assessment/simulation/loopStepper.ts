@@ -79,7 +79,8 @@ export class LoopStepper {
   private band = 0
   private integral = 0
   private filtered = 0
-  private derivativeState = 0
+  private derivative = 0
+  private lastFiltered = 0
   private started = false
 
   // valve, sensor, operator
@@ -177,8 +178,8 @@ export class LoopStepper {
     this.kc = ideal.controllerGain * (this.opHigh - this.opLow) / (this.setup.pvHigh - this.setup.pvLow)
     this.integralStep = this.kc * dt / ideal.integralTime
     const filter = ideal.derivativeTime / 10
-    this.derivativeKeep = filter > 0 ? Math.exp(-dt / filter) : 0
-    this.derivativeGain = filter > 0 ? this.kc * ideal.derivativeTime / filter : 0
+    this.derivativeKeep = filter / (filter + dt)
+    this.derivativeGain = this.kc * ideal.derivativeTime / (filter + dt)
     this.filterKeep = filterTimeS ? Math.exp(-dt / filterTimeS) : 0
     this.weight = setpointWeight ?? 1
     this.band = (hysteresis ?? 0) / 2
@@ -252,10 +253,11 @@ export class LoopStepper {
     if (!this.started) this.filtered = y
     this.filtered += (1 - this.filterKeep) * (y - this.filtered)
     const yf = this.filtered
-    if (!this.started) this.derivativeState = yf
-    this.derivativeState = this.derivativeKeep * this.derivativeState + (1 - this.derivativeKeep) * yf
+    if (!this.started) { this.derivative = 0; this.lastFiltered = yf }
+    this.derivative = this.derivativeKeep * this.derivative - this.derivativeGain * this.sign * (yf - this.lastFiltered)
+    this.lastFiltered = yf
     const error = this.sign * (sp - yf)
-    const pd = this.kc * this.sign * (this.weight * sp - yf) - this.sign * this.derivativeGain * (yf - this.derivativeState)
+    const pd = this.kc * this.sign * (this.weight * sp - yf) + this.derivative
     this.lastProportional = this.sign * (this.weight * sp - yf)
     if (this.mode === 1) {
       if (this.nudgeSteps > 0 && this.step % this.nudgeSteps === 0 && !this.shut) {
@@ -269,8 +271,7 @@ export class LoopStepper {
     }
     if (this.integralStep === 0) {
       // without integral action the output rests at its bias when there is no error
-      const out = this.restOp + this.kc * error - this.sign * this.derivativeGain * (yf - this.derivativeState)
-      this.op = this.limit(out)
+      this.op = this.limit(this.restOp + this.kc * error + this.derivative)
       this.started = true
       return
     }
