@@ -1,0 +1,2 @@
+export function buildWorker(): Promise<void>
+export function buildWeb(): Promise<void>

@@ -1,0 +1,2 @@
+export function ensureDebianPackages(names: ('postgresql' | 'chromium')[]): Promise<void>
+export function postgresPrograms(): string | null

@@ -1,0 +1,2 @@
+export function freePort(): Promise<number>
+export function tryPort(port: number, host?: string): Promise<{ free: boolean, port?: number, code?: string }>
