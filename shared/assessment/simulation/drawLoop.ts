@@ -41,7 +41,7 @@ interface Kind {
 const KINDS: Record<LoopType, Kind> = {
   flow: { mostGain: 2, span: [12, 40, 120, 250], unit: ['m3/h', 't/h'], tauS: [2, 7], deadS: [1, 4], gain: [0.6, 1.6], noise: [0.0015, 0.004], tolerance: 0.02, filterS: [0.5, 2.5], calm: [1, 2.5], intervalS: [2, 5], settlingS: 30, prefix: 'FIC' },
   pressure: { mostGain: 8, span: [6, 10, 16, 25], unit: ['bar', 'mbar'], tauS: [12, 80], deadS: [2, 8], gain: [0.6, 2], noise: [0.0006, 0.002], tolerance: 0.02, filterS: [0, 3], calm: [1.2, 3], intervalS: [5], settlingS: 120, prefix: 'PIC' },
-  level: { mostGain: 5, span: [100], unit: ['%'], tauS: [300, 1500], deadS: [3, 15], gain: [1, 1], noise: [0.001, 0.004], tolerance: 0.04, filterS: [0, 5], calm: [4, 14], intervalS: [10], settlingS: 600, prefix: 'LIC' },
+  level: { mostGain: 5, span: [100], unit: ['%'], tauS: [300, 1500], deadS: [3, 15], gain: [1, 1], noise: [0.001, 0.004], tolerance: 0.03, filterS: [0, 5], calm: [4, 14], intervalS: [10], settlingS: 600, prefix: 'LIC' },
   temperature: { mostGain: 10, span: [150, 250, 400, 600], unit: ['degC'], tauS: [150, 900], deadS: [15, 90], gain: [0.6, 2.2], noise: [0.0002, 0.0008], tolerance: 0.01, filterS: [0, 8], calm: [1.2, 3.5], intervalS: [10, 20], settlingS: 1800, prefix: 'TIC' },
   analysis: { mostGain: 4, span: [14, 21, 100], unit: ['pH', '%', 'ppm'], tauS: [200, 900], deadS: [60, 300], gain: [0.5, 1.5], noise: [0.001, 0.003], tolerance: 0.02, filterS: [0, 20], calm: [1.2, 3], intervalS: [30, 60], settlingS: 3600, prefix: 'AIC' },
   other: { mostGain: 4, span: [100, 1000], unit: ['rpm', '%'], tauS: [5, 40], deadS: [2, 8], gain: [0.6, 1.6], noise: [0.001, 0.003], tolerance: 0.02, filterS: [0, 2], calm: [1.2, 3], intervalS: [5], settlingS: 120, prefix: 'SIC' },

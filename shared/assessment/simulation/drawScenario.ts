@@ -402,8 +402,15 @@ function shortenIntegral({ random, loop, scenario }: Draft): void {
 
 function stick(draft: Draft, options: DrawOptions): void {
   const { random, loop, scenario } = draft
-  calm(draft)
   const integrating = loop.linear.kind === 'integrating'
+  if (integrating) {
+    // averaging level control: the swing of a stuck valve grows as the gain falls
+    const weaker = 0.2 + 0.5 * random.uniform()
+    loop.setup.gain = Number((loop.setup.gain! * weaker).toPrecision(3))
+    loop.setup.integralTimeS = Number((loop.setup.integralTimeS! * (0.6 + 0.4 * random.uniform()) / weaker).toPrecision(3))
+    loop.closedLoopS /= weaker
+  }
+  calm(draft)
   const model = (['kano', 'choudhury', 'he'] as const)[random.integer(3)]
   const stickBand = 1 + 7 * random.uniform()
   const slipJump = Math.min(4, stickBand * (integrating ? random.uniform() : 0.25 + 0.75 * random.uniform()))
@@ -411,9 +418,9 @@ function stick(draft: Draft, options: DrawOptions): void {
   scenario.valve = { kind: 'sticking', model, stickBand: Number(stickBand.toFixed(2)), slipJump: Number(slipJump.toFixed(2)) }
   const samples = integrating ? 12_000 : 4000
   const seen = trial(draft, {}, samples)
-  if (!(seen.deviation * Math.SQRT2 > (integrating ? 0.6 : 0.7) * loop.setup.tolerance && seen.deviation > 2 * sound.deviation)) throw new Redraw('again')
+  if (!(seen.deviation * Math.SQRT2 > (integrating ? 0.6 : 0.7) * loop.setup.tolerance && seen.deviation > (integrating ? 4 : 2) * sound.deviation)) throw new Redraw('again')
   // irregular limit cycles exist, but most valves that people complain of cycle
-  if (seen.opDeviation > (integrating ? 26 : 20) || !(seen.periodS > 0) || (seen.unsteadiness > 0.45 && random.uniform() < 0.9)) throw new Redraw('again')
+  if (seen.opDeviation > (integrating ? 26 : 20) || !(seen.periodS > 0) || (seen.unsteadiness > 0.35 && random.uniform() < 0.9)) throw new Redraw('again')
   requireVisible(seen.periodS, draft, options)
   // the load wanders by itself, and moves the cycle's period with it
   if (random.uniform() < 0.5) scenario.loads.push(randomSteps(random, scenario.durationS, Math.round(draft.days * 3 * random.uniform()), () => 1 + 4 * random.uniform(), loop.closedLoopS))
