@@ -2,28 +2,47 @@
  * Assesses one loop over one ISO week: measures, ledger, oscillations, benchmark, valve tests, verdict, and how each figure was made.
  * Pure; its arguments are left alone. About 10 to 40 ms for a week at 10 s.
  */
-import { detectOscillations } from './oscillation/detectOscillations'
+import { findHunting } from './verdict/findHunting'
+import { frozenSpans } from './quality/frozenSpans'
+import { quantisationStep } from './quality/quantisationStep'
+import { compressionFactor } from './quality/compressionFactor'
+import { varianceBenchmark } from './benchmark/varianceBenchmark'
+import { ratioByHorizon } from './benchmark/ratioByHorizon'
+import { delaySamples } from './benchmark/delaySamples'
 import { autocorrelation } from './statistics/autocorrelation'
 import { welchSpectrum } from './spectrum/welchSpectrum'
-import { buildLedger } from './ledger/buildLedger'
+import { buildLedger, mergeSpans } from './ledger/buildLedger'
 import { errorMeasures } from './error/errorMeasures'
 import { valveMovement } from './error/valveMovement'
 import { analysisSeries, type AnalysisSeries } from './preparation/analysisSeries'
 import { AT_HIGH, AT_LOW, FROZEN, MODE_KNOWN, OFF_NORMAL, prepareRecord, RECEIVED } from './preparation/prepareRecord'
 import { setpointActivity } from './preparation/setpointActivity'
 import { Explainer } from './explanation/Explainer'
+import { cycleShape, type CycleShape } from './verdict/cycleShape'
+import { errorCharacter } from './verdict/errorCharacter'
+import { gatherFeatures, spansOf, type FeatureValues } from './verdict/gatherFeatures'
 import { judge } from './verdict/judge'
-import type { LoopRecord, LoopSetup, LoopWeekAssessment, TimeSpan, WeekFrame } from './types'
+import { readingCharacter } from './verdict/readingCharacter'
+import { isInsufficient, type LoopRecord, type LoopSetup, type LoopWeekAssessment, type Oscillation, type TimeSpan, type WeekFrame } from './types'
 
 /** Changes whenever a figure could come out differently; stands beside every stored assessment. */
 export const METHOD_VERSION = '2026.1'
+
+const QUALITY_SAMPLES = 20_000
+const BENCHMARK_SAMPLES = 20_000
+const COMPRESSION_LIMIT = 3
+
+export interface AssessOptions {
+  /** receives what the likelihood tables look at; for calibration */
+  features?: (values: FeatureValues) => void
+}
 
 /**
  * @param record samples of one loop; those outside the week are ignored
  * @param outages declared outages of the loop's area
  * @throws RangeError on a set-up that contradicts itself, or time stamps that do not ascend
  */
-export function assessLoopWeek(record: LoopRecord, setup: LoopSetup, week: WeekFrame, outages: TimeSpan[]): LoopWeekAssessment {
+export function assessLoopWeek(record: LoopRecord, setup: LoopSetup, week: WeekFrame, outages: TimeSpan[], options: AssessOptions = {}): LoopWeekAssessment {
   const edges = week.hourEdges
   const weekMs = edges[edges.length - 1] - edges[0]
   const prepared = prepareRecord(record, setup, week)
@@ -34,6 +53,8 @@ export function assessLoopWeek(record: LoopRecord, setup: LoopSetup, week: WeekF
     ? { fromMs: prepared.t[0], toMs: prepared.t[n - 1] + (intervalS > 0 ? intervalS * 1000 : 0) }
     : { fromMs: edges[0], toMs: edges[edges.length - 1] }
   const explain = new Explainer(window)
+  const step = n > 1 ? quantisationStep(middleOf(prepared.pv)) : { step: 0, factor: NaN }
+  if (n > 1) for (const s of frozenSpans(prepared.t, prepared.pv, prepared.op, prepared.sp, { horizonS: setup.settlingS, opSpan })) for (let i = s.from; i < s.to; i++) flags[i] |= FROZEN
 
   const count = countFlags(flags, prepared.pv, prepared.op)
   const usableS = count.usable * intervalS
@@ -61,6 +82,10 @@ export function assessLoopWeek(record: LoopRecord, setup: LoopSetup, week: WeekF
     if (setup.form === 'onOff') explain.set('switchingsPerDay', m.switchingsPerDay, m.samples, { ...parameters, opSpan }, {})
   }
 
+  const compression = compressionOf(explain, prepared.pv, step)
+  explain.set('frozenFraction', count.frozen / count.received, count.received, { horizonS: setup.settlingS, opShare: 0.02 }, { frozenSamples: count.frozen })
+  explain.set('outOfRangeFraction', prepared.outOfRange / count.received, count.received, { pvLow: setup.pvLow, pvHigh: setup.pvHigh, marginFraction: 0.05 }, { samplesOutOfRange: prepared.outOfRange })
+
   const error = errorMeasures(prepared, setup.tolerance)
   const noError = prepared.sp ? 'No sample has both SP and PV in a normal mode.' : 'The record has no SP, so there is no control error.'
   explain.set('iaePerHour', error.meanAbsoluteError, error.errorSamples, parameters, {}, noError)
@@ -69,24 +94,34 @@ export function assessLoopWeek(record: LoopRecord, setup: LoopSetup, week: WeekF
   explain.set('standardDeviation', error.standardDeviation, error.pvSamples, parameters, { meanPv: error.pvMean })
   explain.set('timeInTolerance', error.timeInTolerance, error.anySamples, { ...parameters, tolerance: setup.tolerance }, {}, noError)
 
+  const reading = readingCharacter(prepared, pvSpan, step.step)
   const activity = setpointActivity(prepared.sp, pvSpan)
   const series = n > 1 ? analysisSeries(prepared, setup.settlingS) : null
-  const oscillations = series && series.used >= 64
-    ? detectOscillations(series.error, { sampleIntervalS: series.intervalS, minimumAmplitude: setup.form === 'onOff' ? setup.tolerance : setup.tolerance / 2, longestPeriodS: Math.max(14_400, 4 * setup.settlingS) })
-    : []
-  if (series) timesOf(oscillations, series)
+  const hunting = series && series.used >= 64
+    ? findHunting(prepared, series, setup, setup.form === 'onOff' ? setup.tolerance : setup.tolerance / 2, Number.isFinite(reading.noise) ? reading.noise : 0)
+    : null
+  const oscillations = hunting?.oscillations ?? []
   const strongest = oscillations[0]
   const ledger = buildLedger(prepared, setup.tolerance, week, oscillations.flatMap(o => o.episodes), outages)
   const oscillating = ['oscillationIndex', 'oscillationPeriod', 'oscillationAmplitude', 'oscillationStrength'] as const
-  if (strongest && series) {
-    const p = { analysisIntervalS: series.intervalS, tolerance: setup.tolerance }
+  if (strongest && series && hunting) {
+    const huntingS = mergeSpans(oscillations.flatMap(o => o.episodes)).reduce((sum, e) => sum + e.toMs - e.fromMs, 0) / 1000
+    const p = { analysisIntervalS: hunting.series.intervalS, tolerance: setup.tolerance }
     explain.set('oscillationIndex', strongest.regularity, series.used, p, { decayRatio: strongest.decay, episodes: strongest.episodes.length })
     explain.set('oscillationPeriod', strongest.periodS, series.used, p, { standardErrorS: strongest.periodSdS })
     explain.set('oscillationAmplitude', strongest.amplitude, series.used, p, {})
     explain.set('oscillationStrength', strongest.strength, series.used, p, {})
+    explain.set('oscillationShare', Math.min(1, huntingS / usableS), series.used, p, { huntingS, usableS })
   }
-  else explain.withholdAll([...oscillating], series && series.used >= 64 ? 'No regular oscillation of meaningful size was found.' : 'Too few samples in a normal mode and away from the limits.')
+  else {
+    if (series && series.used >= 64) explain.set('oscillationShare', 0, series.used, { analysisIntervalS: series.intervalS, tolerance: setup.tolerance }, { huntingS: 0, usableS })
+    explain.withholdAll([...oscillating, 'oscillationShare'], series && series.used >= 64 ? 'No regular oscillation of meaningful size was found.' : 'Too few samples in a normal mode and away from the limits.')
+  }
 
+  const shape = hunting && strongest ? shapeOf(hunting.series, strongest) : null
+  const features = gatherFeatures({ setup, prepared, series, ledger, oscillations, shape, error: series ? errorCharacter(series) : null, reading, standardDeviation: error.standardDeviation, valveTests: [] })
+  options.features?.(features)
+  const benchmarkByHorizon = benchmarkOf(explain, series, setup, compression)
   const judged = judge({ setup, measures: explain.measures, ledger, oscillations, hasSetpoint: activity.kind !== 'absent' })
   return {
     week: week.id,
@@ -103,7 +138,7 @@ export function assessLoopWeek(record: LoopRecord, setup: LoopSetup, week: WeekF
     valveTests: [],
     rhythm: series ? rhythmOf(series, setup.settlingS, strongest?.periodS) : null,
     pvOp: null,
-    benchmarkByHorizon: null,
+    benchmarkByHorizon,
     model: null,
   }
 }
@@ -124,16 +159,94 @@ function countFlags(flags: Uint8Array, pv: Float64Array, op: Float64Array | null
   return c
 }
 
-/** The detector counts blocks from 0; long gaps and clock changes are put back from the series' own stamps. */
-function timesOf(oscillations: ReturnType<typeof detectOscillations>, series: AnalysisSeries): void {
-  const blockMs = series.intervalS * 1000
-  const last = series.t.length - 1
-  const back = (ms: number) => {
-    const at = ms / blockMs
-    const i = Math.min(last, Math.max(0, Math.floor(at)))
-    return series.t[i] + (at - i) * blockMs
+/** @returns why shape, benchmark and valve tests cannot be trusted on this record, or null */
+function compressionOf(explain: Explainer, pv: Float64Array, step: { step: number, factor: number }): string | null {
+  const piece = middleOf(pv)
+  if (step.step > 0) explain.set('quantisation', step.step, piece.length, {}, { stepOverDeviation: step.factor })
+  else explain.withhold('quantisation', 'No step can be seen: the values do not lie on a grid.')
+  const c = piece.length > 0 ? compressionFactor(piece, step.step) : null
+  if (!c || isInsufficient(c)) {
+    explain.withhold('compressionFactor', c ? sentence(c.reason) : 'No samples in this week.')
+    return null
   }
-  for (const o of oscillations) o.episodes = o.episodes.map(e => ({ fromMs: back(e.fromMs), toMs: back(e.toMs) }))
+  explain.set('compressionFactor', c.factor, c.samples, { tolerance: c.tolerance, upperLimit: 3 }, { zeroSecondDifferences: c.zeroSecondDifferences, repeats: c.repeats, repeatFactor: c.repeatFactor })
+  if (c.factor > COMPRESSION_LIMIT) return `The historian has thinned the record (compression factor ${c.factor.toFixed(1)}, limit 3), so its shape cannot be trusted.`
+  // repeats come from coarse resolution too: only a fine step tells that a value was held
+  if (c.repeatFactor > COMPRESSION_LIMIT && step.step > 0 && step.factor < 0.1) return `Most samples repeat the one before (factor ${c.repeatFactor.toFixed(1)}, limit 3): the historian holds old values, so the shape cannot be trusted.`
+  return null
+}
+
+/** A reason from the numerics, as a sentence. */
+function sentence(reason: string): string {
+  return `${reason.charAt(0).toUpperCase()}${reason.slice(1)}${reason.endsWith('.') ? '' : '.'}`
+}
+
+/** Minimum-variance ratio on the segments of the analysis series. */
+function benchmarkOf(explain: Explainer, series: AnalysisSeries | null, setup: LoopSetup, refused: string | null): LoopWeekAssessment['benchmarkByHorizon'] {
+  const keys = ['varianceRatio', 'varianceRatioLow', 'varianceRatioHigh', 'headroom'] as const
+  const refuse = (reason: string) => {
+    explain.withholdAll([...keys], reason)
+    return null
+  }
+  if (refused) return refuse(refused)
+  if (!series) return refuse('No samples in this week.')
+  if (setup.form === 'onOff') return refuse('On-off control cannot be compared with minimum variance.')
+  let left = BENCHMARK_SAMPLES
+  const segments: Float64Array[] = []
+  for (const s of series.segments) {
+    const length = Math.min(left, s.end - s.begin)
+    if (length < 60) continue
+    segments.push(series.error.subarray(s.begin, s.begin + length))
+    left -= length
+  }
+  // without a dead time: the extended horizon, a sixth of the settling horizon (our default)
+  const horizonS = setup.deadTimeS ?? setup.settlingS / 6
+  const b = Math.min(60, delaySamples(horizonS, series.intervalS))
+  const v = varianceBenchmark(segments, { delaySamples: b, delaySource: setup.deadTimeS === null ? 'horizon' : 'known' })
+  if (isInsufficient(v)) return refuse(sentence(v.reason))
+  const parameters = { analysisIntervalS: series.intervalS, delaySamples: b, delaySource: v.delaySource, horizonS }
+  const intermediates = { minimumVariance: v.minimumVariance, variance: v.variance, asymptoticDeviation: v.standardDeviation, segments: v.segments.length, modelOrder: v.segments[0]?.order ?? null }
+  explain.set('varianceRatio', v.ratio, v.samples, parameters, intermediates)
+  explain.set('headroom', v.headroom, v.samples, parameters, intermediates)
+  if (v.low !== null && v.high !== null) {
+    explain.set('varianceRatioLow', v.low, v.samples, parameters, intermediates)
+    explain.set('varianceRatioHigh', v.high, v.samples, parameters, intermediates)
+  }
+  else explain.withholdAll(['varianceRatioLow', 'varianceRatioHigh'], sentence(v.intervalWithheld ?? 'No interval.'))
+  const curve = ratioByHorizon(segments, { longestSamples: Math.max(30, 2 * b) })
+  if (isInsufficient(curve)) return null
+  return {
+    horizonS: Array.from(curve.ratio, (_, i) => (i + 1) * series.intervalS),
+    ratio: Array.from(curve.ratio, r => Number(r.toFixed(4))),
+  }
+}
+
+/** A piece of at most QUALITY_SAMPLES from the middle: resolution and compression do not change within a week. */
+function middleOf(x: Float64Array): Float64Array {
+  const from = Math.max(0, (x.length - QUALITY_SAMPLES) >> 1)
+  return x.subarray(from, from + QUALITY_SAMPLES)
+}
+
+/** Cycle by cycle over the longest piece of an episode inside one segment. */
+function shapeOf(series: AnalysisSeries, o: Oscillation): CycleShape | null {
+  let begin = 0
+  let end = 0
+  for (const [from, to] of spansOf(series, o)) {
+    for (const s of series.segments) {
+      const a = Math.max(from, s.begin)
+      const b = Math.min(to, s.end)
+      if (b - a > end - begin) {
+        begin = a
+        end = b
+      }
+    }
+  }
+  const period = o.periodS / series.intervalS
+  if (end - begin < 6 * period) return null
+  // minus the error is PV without what the set point does
+  const y = series.error.slice(begin, end)
+  for (let i = 0; i < y.length; i++) y[i] = -y[i]
+  return cycleShape(y, series.op ? series.op.subarray(begin, end) : null, period)
 }
 
 /** Autocorrelation and spectrum of the longest segment, thinned for drawing. */

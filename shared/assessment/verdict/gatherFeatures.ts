@@ -1,0 +1,158 @@
+/**
+ * The figures that the likelihood tables know, gathered from the parts of the assessment. NaN: not there.
+ */
+import type { LoopSetup, Oscillation, ValveTest } from '../types'
+import type { Ledger } from '../ledger/buildLedger'
+import { OFF_NORMAL, type PreparedRecord } from '../preparation/prepareRecord'
+import type { AnalysisSeries } from '../preparation/analysisSeries'
+import type { CycleShape } from './cycleShape'
+import type { ErrorCharacter } from './errorCharacter'
+import type { ReadingCharacter } from './readingCharacter'
+
+export const FEATURES = [
+  'huntingShare', 'regularity', 'decay', 'strength', 'amplitudeOverTolerance',
+  'amplitudeVariation', 'periodVariation', 'phaseWander',
+  'pvThird', 'opThird', 'pvOdd', 'opOdd', 'pvEven', 'opEven', 'pvCoherence',
+  'periodOverIntegralTime', 'periodOverDeadTime', 'setpointSwing', 'manualSwing', 'secondOscillation',
+  'errorDecayOverSettling', 'staySideOverSettling', 'whiteness', 'kurtosis',
+  'deviationOverTolerance', 'noiseOverTolerance', 'noiseShare', 'burstRatio', 'wildShare', 'offTargetShare',
+] as const
+export type FeatureName = typeof FEATURES[number]
+export type FeatureValues = Record<FeatureName, number>
+
+export interface FeatureParts {
+  setup: LoopSetup
+  prepared: PreparedRecord
+  series: AnalysisSeries | null
+  ledger: Ledger
+  oscillations: Oscillation[]
+  shape: CycleShape | null
+  error: ErrorCharacter | null
+  reading: ReadingCharacter
+  standardDeviation: number
+  valveTests: ValveTest[]
+}
+
+export function gatherFeatures(parts: FeatureParts): FeatureValues {
+  const { setup, prepared, series, ledger, oscillations, shape, error, reading } = parts
+  const v = Object.fromEntries(FEATURES.map(f => [f, NaN])) as FeatureValues
+  const o = oscillations[0]
+  const { hours } = ledger
+  const judgedHours = hours.hunting + hours.offTarget + hours.steady
+  const { tolerance } = setup
+
+  if (o && series) {
+    const time = o.episodes.reduce((s, e) => s + e.toMs - e.fromMs, 0) / 1000
+    v.huntingShare = time / (series.used * series.intervalS)
+    v.regularity = Math.log10(o.regularity)
+    v.decay = o.decay
+    v.strength = o.strength
+    v.amplitudeOverTolerance = o.amplitude / tolerance
+    v.secondOscillation = oscillations.length > 1 ? oscillations[1].strength / o.strength : 0
+    v.periodOverIntegralTime = setup.integralTimeS ? Math.log(o.periodS / setup.integralTimeS) : NaN
+    v.periodOverDeadTime = setup.deadTimeS ? Math.log(o.periodS / setup.deadTimeS) : NaN
+    if (series.sp) v.setpointSwing = swingAt(series.sp, o.periodS / series.intervalS, spansOf(series, o)) / o.amplitude
+    v.manualSwing = manualSwing(prepared, o)
+  }
+  else {
+    v.huntingShare = 0
+  }
+  if (shape) {
+    v.amplitudeVariation = shape.amplitudeVariation
+    v.periodVariation = shape.periodVariation
+    v.phaseWander = shape.phaseWander
+    v.pvThird = shape.pvThird
+    v.opThird = shape.opThird
+    v.pvOdd = shape.pvOdd
+    v.opOdd = shape.opOdd
+    v.pvEven = shape.pvEven
+    v.opEven = shape.opEven
+    v.pvCoherence = shape.pvCoherence
+  }
+  if (error) {
+    v.errorDecayOverSettling = Math.log10(error.decayS / setup.settlingS)
+    v.staySideOverSettling = Math.log10(error.staySideS / setup.settlingS)
+    v.whiteness = error.whiteness
+    v.kurtosis = error.kurtosis
+  }
+  const sd = parts.standardDeviation
+  v.deviationOverTolerance = sd / tolerance
+  v.noiseOverTolerance = reading.noise / tolerance
+  v.noiseShare = sd > 0 ? Math.min(1, (reading.noise / sd) ** 2) : NaN
+  v.burstRatio = Math.log10(reading.burstRatio)
+  v.wildShare = reading.wildShare
+  v.offTargetShare = judgedHours > 0 ? hours.offTarget / judgedHours : NaN
+  return v
+}
+
+/** Block indices of an oscillation's episodes. */
+export function spansOf(series: AnalysisSeries, o: Oscillation): [number, number][] {
+  return o.episodes.map(e => [indexOf(series.t, e.fromMs), indexOf(series.t, e.toMs)])
+}
+
+function indexOf(t: Float64Array, ms: number): number {
+  let low = 0
+  let high = t.length
+  while (low < high) {
+    const mid = (low + high) >> 1
+    if (t[mid] < ms) low = mid + 1
+    else high = mid
+  }
+  return low
+}
+
+/** Amplitude of x at a period (samples), in windows of 8 periods so that a wandering phase does not cancel it; NaN without data. */
+function swingAt(x: Float64Array, period: number, spans: [number, number][]): number {
+  const window = Math.max(8, Math.round(8 * period))
+  let squares = 0
+  let count = 0
+  for (const [from, to] of spans) {
+    for (let begin = from; begin + window <= to && count < 40; begin += window) {
+      const a = amplitudeAt(x, begin, window, period)
+      if (a === a) {
+        squares += a * a
+        count++
+      }
+    }
+  }
+  return count > 0 ? Math.sqrt(squares / count) : NaN
+}
+
+function amplitudeAt(x: Float64Array, begin: number, window: number, period: number): number {
+  let re = 0
+  let im = 0
+  let mean = 0
+  for (let i = 0; i < window; i++) mean += x[begin + i]
+  mean /= window
+  if (mean !== mean) return NaN
+  for (let i = 0; i < window; i++) {
+    const w = 1 - Math.cos((2 * Math.PI * (i + 0.5)) / window)
+    const angle = (2 * Math.PI * i) / period
+    re += w * (x[begin + i] - mean) * Math.cos(angle)
+    im += w * (x[begin + i] - mean) * Math.sin(angle)
+  }
+  return (2 * Math.hypot(re, im)) / window
+}
+
+/**
+ * A free test: PV's swing at the oscillation's period while the loop stands in manual, over its swing while it hunts. NaN when there is
+ * no stretch of manual of 4 periods; the first period is left out, since the swing needs time to die down.
+ */
+function manualSwing(prepared: PreparedRecord, o: Oscillation): number {
+  const period = o.periodS / prepared.intervalS
+  const { flags, pv, n } = prepared
+  const window = Math.round(3 * period)
+  let best = NaN
+  let run = 0
+  for (let i = 0; i <= n; i++) {
+    if (i < n && (flags[i] & OFF_NORMAL) !== 0 && pv[i] === pv[i]) run++
+    else {
+      if (run >= 4 * period) {
+        const a = amplitudeAt(pv, i - window, window, period)
+        if (a === a && !(a > best)) best = a
+      }
+      run = 0
+    }
+  }
+  return best / o.amplitude
+}
