@@ -6,7 +6,7 @@ import { largestDifference, referenceCases, referenceFile, signal } from './refe
 describe('autocorrelation', () => {
   // R stats::acf; to lag 3,000 of 20,000 samples, so that the block transforms are held to it too (R adds one product
   // after the other: its own rounding is of the order n times 1e-16 at worst)
-  it.each(referenceFile('r-correlation').autocorrelation)('equals R acf of $csv to lag $maxLag', ({ csv, maxLag, lags, r }: { csv: string, maxLag: number, lags: number[], r: number[] }) => {
+  it.each<{ csv: string, maxLag: number, lags: number[], r: number[] }>(referenceFile('r-correlation').autocorrelation)('equals R acf of $csv to lag $maxLag', ({ csv, maxLag, lags, r }) => {
     const ours = autocorrelation(signal(csv), maxLag)
     expect(largestDifference(lags.map(k => ours[k]), r)).toBeLessThan(1e-13)
   })

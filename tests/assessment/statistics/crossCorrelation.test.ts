@@ -6,7 +6,7 @@ const reference = referenceFile('r-correlation')
 
 describe('crossCorrelation', () => {
   // R stats::ccf on BJsales and BJsales.lead (Box, Jenkins 1976, series M)
-  it.each(reference.crossCorrelation)('equals R ccf: $id', ({ x, y, maxLag, r }: { x: number[], y: number[], maxLag: number, r: number[] }) => {
+  it.each<{ x: number[], y: number[], maxLag: number, r: number[] }>(reference.crossCorrelation)('equals R ccf: $id', ({ x, y, maxLag, r }) => {
     expect(largestDifference(crossCorrelation(Float64Array.from(x), Float64Array.from(y), maxLag), r)).toBeLessThan(1e-14)
   })
   it.each(['BJsales_diff', 'BJsales_prewhitened'])('finds the published delay of 3 in %s', (id) => {
