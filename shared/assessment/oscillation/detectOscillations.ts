@@ -23,16 +23,21 @@ export interface DetectOptions {
 const BRIDGED = 5
 /** Lags of the autocorrelation to a period, and periods of it. */
 const LAGS = 32, PERIODS = 7
-/** Quarter decay would be 0.5; the estimate on a few cycles scatters, and the peak has been tested already. */
-const LOWEST_DECAY = 0.4
+/** Quarter decay, the published limit. */
+const LOWEST_DECAY = 0.5
 /** Samples to a period below which nothing is reported. */
 const SHORTEST_PERIOD = 4
 /** Least evidence of an episode (see evidence). */
 const LEAST_EVIDENCE = 40
+/** Share of an episode's energy within two periods from which it is the answer to a step or a spike. */
+const TRANSIENT = 0.85
+/** Swing to first harmonic: 1 for a sine, 0.79 for a square, 1.23 for a triangle wave. */
+const LARGEST_SWING = 1.3
 /** Samples that the mean cycle is taken from. */
 const CYCLE_SAMPLES = 6000
 
-interface Candidate extends Oscillation { frequency: number, spans: [number, number][] }
+/** `fundamental`: amplitude of the first harmonic */
+interface Candidate extends Oscillation { frequency: number, fundamental: number, spans: [number, number][] }
 
 /**
  * All oscillations of a control error, with period, swing, regularity, decay, share of the variance and the times at which
@@ -71,7 +76,7 @@ export function detectOscillations(error: Float64Array, options: DetectOptions):
   found.sort((a, b) => b.strength - a.strength)
   return found
     .filter((one, i) => !found.some((other, j) => j !== i && isHarmonic(one, other)) && !found.slice(0, i).some(other => isTwin(one, other)))
-    .map(({ frequency: _f, spans: _s, ...oscillation }) => oscillation)
+    .map(({ frequency: _f, fundamental: _a, spans: _s, ...oscillation }) => oscillation)
 }
 
 /** Differences without the gaps, where there are samples, and the variance of what is there. */
@@ -117,8 +122,8 @@ function examine(error: Float64Array, spectrum: StepSpectrum, variance: number, 
   if (!(size > 0.5 * smallest)) return null
   const background = backgroundAmplitude(spectrum, frequency)
   const threshold = Math.max(0.3 * size, 0.6 * smallest, 1.5 * background)
-  const spans = episodes(envelope, smoothEnvelope, { threshold, perPeriod })
-    .filter(span => evidence(smoothEnvelope, span, background) / perPeriod > LEAST_EVIDENCE)
+  const spans = episodes(envelope, smoothEnvelope, { threshold, background, perPeriod })
+    .filter(span => evidence(smoothEnvelope, span, background) / perPeriod > LEAST_EVIDENCE && largestShare(envelope, span, Math.round(2 * perPeriod)) < TRANSIENT)
   if (!spans.length) return null
   const covariance = maskedAutocovariance(a, spans, Math.ceil(PERIODS * perPeriod))
   const acf = fineAutocorrelation(covariance, perPeriod)
@@ -129,17 +134,21 @@ function examine(error: Float64Array, spectrum: StepSpectrum, variance: number, 
   const exact = frequency + offset / stride
   const period = 1 / exact
   if (period < SHORTEST_PERIOD || exact < low || exact > high) return null
-  const { swing, harmonicPower } = meanCycle(error, smooth, spans, { frequency, stride, period })
-  if (!(swing >= smallest)) return null
   let time = 0, power = 0
   for (const [from, to] of spans) for (let i = from; i < to; i++) { time++; power += (smooth[2 * i] ** 2 + smooth[2 * i + 1] ** 2) / 2 }
+  const fundamental = Math.sqrt(2 * power / time)
+  const { swing, harmonicPower } = meanCycle(error, smooth, spans, { frequency, stride, period })
+  // What swings far more than its first harmonic has the harmonics of another oscillation in its mean cycle.
+  const amplitude = Math.min(swing, LARGEST_SWING * fundamental)
+  if (!(amplitude >= smallest)) return null
   const toMs = (i: number) => t0Ms + Math.min(i * stride, error.length) * sampleIntervalS * 1000
   return {
     frequency: exact,
+    fundamental,
     spans: spans.map(([from, to]) => [from * stride, to * stride]),
     periodS: period * sampleIntervalS,
     periodSdS: period * period * standardError / stride * sampleIntervalS,
-    amplitude: swing,
+    amplitude,
     regularity: r,
     decay,
     strength: Math.min(1, (power / n + harmonicPower * time / n) / variance),
@@ -184,6 +193,18 @@ function evidence(smoothEnvelope: Float64Array, [from, to]: [number, number], ba
   for (let i = from; i < to; i++) squares += smoothEnvelope[i] ** 2
   const ratio = squares / (to - from) / background ** 2
   return ratio > 1 ? (to - from) * (ratio - 1 - Math.log(ratio)) : 0
+}
+
+/** Largest share of the energy within `width` successive values. */
+function largestShare(envelope: Float64Array, [from, to]: [number, number], width: number): number {
+  let sum = 0, total = 0, largest = 0
+  for (let i = from; i < to; i++) {
+    const square = envelope[i] * envelope[i]
+    total += square
+    sum += square - (i - from >= width ? envelope[i - width] * envelope[i - width] : 0)
+    if (sum > largest) largest = sum
+  }
+  return largest / total
 }
 
 /** Lagged products of the baseband within the episodes, complex, lags 0..lags. */
@@ -288,10 +309,17 @@ function overlapShare(one: Candidate, other: Candidate): number {
   return inside / length
 }
 
-/** Whole multiple of another's frequency, smaller, and only there while the other is. */
+/** Whole multiple of another's frequency, also one folded back by the sampling, smaller, and only there while the other is. */
 function isHarmonic(one: Candidate, other: Candidate): boolean {
+  if (one.fundamental > 0.8 * other.fundamental || overlapShare(one, other) < 0.7) return false
   const ratio = one.frequency / other.frequency, order = Math.round(ratio)
-  return order >= 2 && Math.abs(ratio - order) < Math.min(0.03 * order, 0.12) && one.amplitude < 0.8 * other.amplitude && overlapShare(one, other) > 0.7
+  if (order >= 2 && Math.abs(ratio - order) < Math.min(0.04 * order, 0.15)) return true
+  const error = other.periodSdS / other.periodS * other.frequency + one.periodSdS / one.periodS * one.frequency
+  for (let n = 3; n <= 41; n++) {
+    const folded = Math.abs(n * other.frequency - Math.round(n * other.frequency))
+    if (n * other.frequency > 0.5 && Math.abs(folded - one.frequency) < Math.min(0.005, 0.001 + n * error) && one.fundamental < 1.5 / n * other.fundamental) return true
+  }
+  return false
 }
 
 /** Part of the same broad peak. */

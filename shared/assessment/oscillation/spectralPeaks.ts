@@ -10,10 +10,10 @@ export interface SpectralPeak {
 /** Cycles in a segment between which a peak is looked for; each period is thus seen at two segment lengths. */
 const FEWEST_CYCLES = 6
 const MOST_CYCLES = 24
-/** A peak must stand this far above its surroundings however long the average: a resonance damped by less than about 0.25. */
-const LOWEST_RATIO = Math.log(7)
+/** A peak must stand this far above its surroundings however long the average; noise through a well damped loop does not. */
+const LOWEST_RATIO = Math.log(4)
 /** Normal quantile by which short averages must exceed a part of that ratio, because a single look is exponentially distributed. */
-const QUANTILE = 4
+const QUANTILE = 3.5
 /** Two peaks nearer than this (logarithm of the ratio) are one unless a dip lies between them. */
 const NEAR = 0.6
 
@@ -88,8 +88,9 @@ function searchLength(steps: Float64Array, present: Uint8Array, length: number, 
       for (let i = 0; i < length; i++) segment[i] = (steps[from + i] - mean) * window[i]
       transform.forward(segment, spectrum)
     }
-    for (let k = 0; k < bins; k++) {
-      sums[(j + 1) * bins + k] = sums[j * bins + k] + (good ? spectrum[2 * k] ** 2 + spectrum[2 * k + 1] ** 2 : 0)
+    for (let k = 0, at = j * bins; k < bins; k++, at++) {
+      const re = spectrum[2 * k], im = spectrum[2 * k + 1]
+      sums[at + bins] = sums[at] + (good ? re * re + im * im : 0)
     }
   }
   const power = new Float64Array(bins), logs = new Float64Array(bins + 1)

@@ -1,5 +1,4 @@
 const HARMONICS = 5
-const GRID = 96
 
 export interface Waveform {
   /** half of the peak-to-peak swing of the mean cycle */
@@ -9,8 +8,8 @@ export interface Waveform {
 }
 
 /**
- * Mean cycle of an oscillation whose phase is known, as a sum of its first five harmonics; a harmonic counts when it stands
- * three standard errors above the rest. Noise averages out, unlike in a plain peak-to-peak.
+ * Mean cycle of an oscillation whose phase is known, by its first five harmonics, which count when they stand three standard
+ * errors above the rest, and where some do by means over bins of phase. Noise averages out, unlike in a plain peak-to-peak.
  * @param signal values, NaN is skipped, length n; its slow part must be taken off before
  * @param phase radians, length n
  * O(n).
@@ -46,12 +45,22 @@ export function waveform(signal: Float64Array, phase: Float64Array): Waveform {
     if (re[h] ** 2 + im[h] ** 2 < limit) re[h] = im[h] = 0
     else harmonicPower += (re[h] ** 2 + im[h] ** 2) / 2
   }
+  // No harmonic stands out: the swing is the first one's amplitude. Bins would add their noise to it.
+  if (harmonicPower === 0) return { swing: Math.hypot(re[1], im[1]), harmonicPower }
+  const bins = Math.min(32, Math.max(8, Math.floor(n / 40)))
+  const sums = new Float64Array(bins), counts = new Int32Array(bins)
+  for (let i = 0; i < signal.length; i++) {
+    if (signal[i] !== signal[i]) continue
+    const turn = phase[i] / (2 * Math.PI)
+    const bin = Math.min(bins - 1, Math.floor((turn - Math.floor(turn)) * bins))
+    sums[bin] += signal[i]
+    counts[bin]++
+  }
   let highest = -Infinity, lowest = Infinity
-  for (let g = 0; g < GRID; g++) {
-    let value = 0
-    for (let h = 1; h <= HARMONICS; h++) if (re[h] || im[h]) value += re[h] * Math.cos(2 * Math.PI * h * g / GRID) + im[h] * Math.sin(2 * Math.PI * h * g / GRID)
-    if (value > highest) highest = value
-    if (value < lowest) lowest = value
+  for (let bin = 0; bin < bins; bin++) {
+    if (!counts[bin]) continue
+    highest = Math.max(highest, sums[bin] / counts[bin])
+    lowest = Math.min(lowest, sums[bin] / counts[bin])
   }
   return { swing: (highest - lowest) / 2, harmonicPower }
 }
