@@ -5,11 +5,11 @@ import { fft } from './fft'
 /**
  * Zero-phase band-pass: keeps the part of the record between two frequencies, without delay.
  *
- * The mean-removed record is continued at both ends by point reflection (2 x_end - x, so level and slope go on and no
- * jump leaks into the band) for up to one and a half periods of the low edge, transformed, weighted and transformed
- * back. The weight is 1 within the band and falls as a raised cosine to 0 over `edgeFraction` of each edge frequency
- * outside it, half amplitude lying in the middle of the fall: soft edges ring less than a box. The first and last
- * period of the low edge are still less sure than the middle.
+ * The mean-removed record is mirrored at both ends, fading over one and a half periods of the low edge, transformed,
+ * weighted and transformed back. (Mirrored, not turned about its end point: turning about a point that lies off the
+ * local mean shifts the level of the whole continuation, and that leaks into a low band.) The weight is 1 within the
+ * band and falls as a raised cosine to 0 over `edgeFraction` of each edge frequency outside it: soft edges ring less
+ * than a box. The first and last period of the low edge are less sure than the middle.
  *
  * @param x length n >= 4, finite, regular samples
  * @param options sampleIntervalS > 0 (s); 0 <= lowHz < highHz (Hz; lowHz 0: low-pass without the mean; highHz at or above half
@@ -18,7 +18,7 @@ import { fft } from './fft'
  * @throws RangeError on a value that is not finite or an option outside its range
  * Source: definition (frequency-domain weighting); the spectral filter for oscillation detection of N. F. Thornhill,
  * B. Huang, H. Zhang (2003) Detection of multiple oscillations in control loops, J. Process Control 13:91-100; edges and
- * reflection are ours. Reference: closed forms on sines in the test. Cost O(n log n).
+ * mirroring are ours. Reference: closed forms on sines in the test. Cost O(n log n).
  */
 export function bandPass(
   x: Float64Array,
@@ -38,13 +38,12 @@ export function bandPass(
   while (size < n + 2 * margin) size *= 2
   const m = mean(x)
   const extended = new Float64Array(size)
-  const first = x[0] - m
-  const last = x[n - 1] - m
   for (let i = 0; i < n; i++) extended[i] = x[i] - m
-  // after the end, then (circularly) before the begin; what is left between them is zero
+  // after the end, then (circularly) before the begin; both fade to the zeros between them
   for (let j = 1; j <= margin; j++) {
-    extended[n - 1 + j] = 2 * last - (x[n - 1 - j] - m)
-    extended[size - j] = 2 * first - (x[j] - m)
+    const fade = 0.5 + 0.5 * Math.cos(Math.PI * j / (margin + 1))
+    extended[n - 1 + j] = fade * extended[n - 1 - j]
+    extended[size - j] = fade * extended[j]
   }
   const transform = fft(size)
   const spectrum = new Float64Array(2 * size)
