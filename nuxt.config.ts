@@ -18,6 +18,8 @@ export default defineNuxtConfig({
       link: [{ rel: 'icon', type: 'image/svg+xml', href: '/icon.svg' }],
     },
   },
+  // The session store asks /api/auth/me itself.
+  auth: { loadStrategy: 'none' },
   tailwindcss: { cssPath: '~/assets/css/tailwind.css', viewer: false },
   nitro: {
     sourceMap: false,
@@ -27,7 +29,8 @@ export default defineNuxtConfig({
     experimental: { asyncContext: false },
   },
   runtimeConfig: {
-    session: { name: 'fettle-session', password: '', cookie: { sameSite: 'lax' as const } },
+    // Secure unless the start command, which knows PUBLIC_URL, says that the site runs on plain http.
+    session: { name: 'fettle-session', password: '', maxAge: 14 * 24 * 3600, sessionHeader: false as const, cookie: { sameSite: 'lax' as const, httpOnly: true, secure: true } },
   },
   typescript: { strict: true, tsConfig: { compilerOptions: { noUncheckedIndexedAccess: false, allowImportingTsExtensions: true } } },
   vite: { build: { chunkSizeWarningLimit: 1200 } },

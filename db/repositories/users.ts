@@ -59,3 +59,9 @@ export async function lockActiveAdmins(db: Database): Promise<number[]> {
   const rows = await db('users').where({ role: 'admin' }).whereNull('disabled_at').whereNotNull('password_hash').forUpdate().select('id')
   return rows.map(r => r.id)
 }
+
+export async function listActiveNames(db: Database, { withDemo }: { withDemo: boolean }): Promise<{ id: number, name: string, role: Role }[]> {
+  const query = db('users').whereNull('disabled_at').orderBy('name').select('id', 'name', 'role')
+  if (!withDemo) query.where('demo', false)
+  return await query
+}

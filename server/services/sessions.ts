@@ -16,10 +16,10 @@ export async function beginSession(db: Database, userId: number, userAgent: stri
   return id
 }
 
-/** The person of a live session, or null: ended, too old, idle too long, or the account is disabled. */
-export async function touchSession(db: Database, id: string, now = new Date()): Promise<Person | null> {
+/** The person of a live session, or null: ended, too old, idle too long, the account is disabled, or a demo one without the demo. */
+export async function touchSession(db: Database, id: string, { demo }: { demo: boolean }, now = new Date()): Promise<Person | null> {
   const found = await findSessionPerson(db, hash(id))
-  if (!found || found.expiresAt <= now || now.getTime() - found.lastSeenAt.getTime() > IDLE_LIMIT_MS) return null
+  if (!found || (found.demo && !demo) || found.expiresAt <= now || now.getTime() - found.lastSeenAt.getTime() > IDLE_LIMIT_MS) return null
   if (now.getTime() - found.lastSeenAt.getTime() > SEEN_EVERY_MS) await markSessionSeen(db, hash(id), now)
   return found.person
 }

@@ -24,7 +24,7 @@ export async function changeSettings(db: Knex, change: Partial<SiteSettings>, by
     const before = await getSettings(trx)
     const changed = (Object.entries(change) as [keyof SiteSettings, unknown][]).filter(([key, value]) => value !== undefined && JSON.stringify(value) !== JSON.stringify(before[key]))
     for (const [key, value] of changed) await writeSetting(trx, key, value)
-    if (changed.length) await insertAudit(trx, { userId: by.userId, actor: by.name, action: 'changed', entity: 'settings', data: Object.fromEntries(changed.map(([key, value]) => [key, { from: before[key], to: value }])) })
+    if (changed.length) await insertAudit(trx, { userId: by.userId, actor: by.name, action: 'settings.change', entity: 'settings', data: Object.fromEntries(changed.map(([key, value]) => [key, { from: before[key], to: value }])) })
     return await getSettings(trx)
   })
 }

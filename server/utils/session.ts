@@ -1,7 +1,17 @@
 import type { H3Event } from 'h3'
+import { getCookie } from 'h3'
 import { clearUserSession, getUserSession, setUserSession } from '#imports'
 import type { Person } from '../../shared/types/people'
 import { beginSession, endSession, touchSession } from '../services/sessions'
+import { environment } from './environment'
+
+const COOKIE = 'fettle-session'
+
+/** The id that the sealed cookie carries. Asking the library only when there is a cookie, because it would set one for anybody. */
+async function sessionId(event: H3Event): Promise<string | undefined> {
+  if (!getCookie(event, COOKIE)) return undefined
+  return (await getUserSession(event) as { secure?: { sessionId?: string } }).secure?.sessionId
+}
 
 /**
  * nuxt-auth-utils seals the cookie, but a sealed cookie alone cannot be revoked: it carries only a random id here,
@@ -10,20 +20,22 @@ import { beginSession, endSession, touchSession } from '../services/sessions'
 export async function personOfSession(event: H3Event): Promise<Person | null> {
   const cached = event.context.person as Person | null | undefined
   if (cached !== undefined) return cached
-  const { secure } = await getUserSession(event) as { secure?: { sessionId?: string } }
-  const person = secure?.sessionId ? await touchSession(database(), secure.sessionId) : null
+  const id = await sessionId(event)
+  const person = id ? await touchSession(database(), id, { demo: environment().DEMO === 'on' }) : null
   event.context.person = person
   return person
 }
 
+/** A new session with a new id, whatever cookie came along. */
 export async function signInAs(event: H3Event, userId: number, userAgent: string | undefined): Promise<void> {
-  await clearUserSession(event)
-  const sessionId = await beginSession(database(), userId, userAgent)
-  await setUserSession(event, { secure: { sessionId } } as never)
+  await signOut(event)
+  const id = await beginSession(database(), userId, userAgent)
+  await setUserSession(event, { secure: { sessionId: id } } as never)
 }
 
 export async function signOut(event: H3Event): Promise<void> {
-  const { secure } = await getUserSession(event) as { secure?: { sessionId?: string } }
-  if (secure?.sessionId) await endSession(database(), secure.sessionId)
+  const id = await sessionId(event)
+  if (!id) return
+  await endSession(database(), id)
   await clearUserSession(event)
 }

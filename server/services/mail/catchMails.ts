@@ -1,4 +1,5 @@
 import type { AddressInfo } from 'node:net'
+import PostalMime from 'postal-mime'
 import { SMTPServer } from 'smtp-server'
 import type { Database } from '../../../db/knex'
 import { insertCaughtMail } from '../../../db/repositories/mails'
@@ -15,10 +16,9 @@ export async function catchMails(db: Database): Promise<{ url: string, close: ()
       stream.on('end', () => {
         const raw = Buffer.concat(chunks)
         const envelope = session.envelope
-        insertCaughtMail(db, {
-          from: envelope.mailFrom ? envelope.mailFrom.address : '', to: envelope.rcptTo.map(a => a.address),
-          subject: readSubject(raw), raw,
-        }).then(() => done(), done)
+        PostalMime.parse(raw)
+          .then(({ subject }) => insertCaughtMail(db, { from: envelope.mailFrom ? envelope.mailFrom.address : '', to: envelope.rcptTo.map(a => a.address), subject: subject ?? '', raw }))
+          .then(() => done(), done)
       })
     },
   })
@@ -29,14 +29,4 @@ export async function catchMails(db: Database): Promise<{ url: string, close: ()
   })
   const { port } = server.server.address() as AddressInfo
   return { url: `smtp://127.0.0.1:${port}`, close: () => new Promise(resolve => server.close(() => resolve())) }
-}
-
-/** Subject header, unfolded, with RFC 2047 words decoded. */
-function readSubject(raw: Buffer): string {
-  const head = raw.toString('latin1').split(/\r?\n\r?\n/, 1)[0]!.replace(/\r?\n[ \t]+/g, ' ')
-  const value = /^subject:\s*(.*)$/im.exec(head)?.[1] ?? ''
-  return value.replace(/(\?=)\s+(=\?)/g, '$1$2').replace(/=\?([^?]+)\?([bq])\?([^?]*)\?=/gi, (_, charset: string, kind: string, text: string) => {
-    const bytes = kind.toLowerCase() === 'b' ? Buffer.from(text, 'base64') : Buffer.from(text.replace(/_/g, ' ').replace(/=([0-9a-f]{2})/gi, (__, hex: string) => String.fromCharCode(Number.parseInt(hex, 16))), 'latin1')
-    return bytes.toString(/utf-?8/i.test(charset) ? 'utf8' : 'latin1')
-  })
 }

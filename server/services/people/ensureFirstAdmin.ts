@@ -10,7 +10,7 @@ export async function ensureFirstAdmin(db: Knex, email: string, password: string
   return await db.transaction(async (trx) => {
     const id = await insertUser(trx, { email, name: email.split('@')[0]!, role: 'admin', passwordHash })
     if (id === null) return false
-    await insertAudit(trx, { userId: null, actor: 'start', action: 'created', entity: 'person', entityId: id, data: { email, role: 'admin' } })
+    await insertAudit(trx, { userId: null, actor: 'start', action: 'person.create', entity: 'person', entityId: id, data: { email, role: 'admin' } })
     return true
   })
 }
