@@ -37,13 +37,25 @@ function add(part: LoadPart, out: Float64Array, stepS: number, from: number, to:
       }
       return
     }
-    case 'steps':
-      for (let j = 0; j < part.at.length; j++) {
-        const rise = Math.max(part.riseS, 1e-9)
-        for (let k = Math.max(from, Math.ceil(part.at[j] / stepS)); k < to; k++)
-          out[k] += part.size[j] * Math.min(1, (k * stepS - part.at[j]) / rise + (part.riseS > 0 ? 0 : 1))
+    case 'steps': {
+      const { at, size, riseS } = part
+      // each rise by itself, then one pass for the levels reached: many steps cost no more than one
+      const reached = at.map((time, j) => ({ from: Math.max(0, Math.ceil((time + riseS) / stepS - 1e-9)), size: size[j] })).sort((x, y) => x.from - y.from)
+      for (let j = 0; j < at.length; j++) {
+        const end = Math.min(to, Math.ceil((at[j] + riseS) / stepS - 1e-9))
+        for (let k = Math.max(from, Math.ceil(at[j] / stepS - 1e-9)); k < end; k++) out[k] += size[j] * (k * stepS - at[j]) / riseS
       }
+      let level = 0
+      let k = from
+      for (const { from: begin, size: change } of reached) {
+        const end = Math.min(begin, to)
+        if (level !== 0) for (; k < end; k++) out[k] += level
+        k = Math.max(k, end)
+        level += change
+      }
+      if (level !== 0) for (; k < to; k++) out[k] += level
       return
+    }
     case 'pulses':
       for (const at of part.at) {
         const end = at + part.widthS

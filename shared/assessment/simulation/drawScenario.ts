@@ -15,6 +15,8 @@ export interface DrawOptions {
   startMs?: number
   /** false: the cause acts all the time; else in a third of the draws only in a part of it */
   partial?: boolean
+  /** for `carriedIn`: the period that arrives; undefined: drawn */
+  periodS?: number
 }
 
 interface Draft {
@@ -39,13 +41,13 @@ const DAY = 86_400
  * The same arguments give the same draw. Mostly 5 to 30 ms.
  * @param seed integer 0..2^32-1
  * @param options days > 0; intervalS: process times are stretched where the interval could not show the hunting
- * @throws RangeError when no draw out of 60 shows the cause
+ * @throws RangeError when no draw out of 120 shows the cause
  * Source: common practice, no source; tuning by S. Skogestad (2003).
  */
 export function drawScenario(cause: Cause, type: LoopType, seed: number, options: DrawOptions): { setup: LoopSetup, scenario: LoopScenario, truth: LoopTruth } {
   let slower = 1
   const stream = mixSeed(seed, 10 * CAUSES.indexOf(cause) + TYPES.indexOf(type))
-  for (let attempt = 0; attempt < 60; attempt++) {
+  for (let attempt = 0; attempt < 120; attempt++) {
     try {
       const random = seededRandom(mixSeed(stream, attempt))
       const intervalS = cause === 'tooSlow' ? undefined : options.intervalS
@@ -301,22 +303,12 @@ function movingSetpoint(draft: Draft, perDay: number, low: number, high: number)
   return { kind: 'points', start: Number(base.toPrecision(3)), points }
 }
 
-/** The set point of a cascade's inner loop: slow wandering, a little noise of the outer controller. */
-function wanderingSetpoint(draft: Draft): SetpointProgramme {
-  const { random, loop, scenario } = draft
-  const stepS = scenario.intervalS
-  const n = Math.ceil(scenario.durationS / stepS) + 1
-  const values = new Float64Array(n)
-  const keep = Math.exp(-stepS / (loop.closedLoopS * (30 + 60 * random.uniform())))
-  const size = loop.setup.tolerance * (0.8 + 1.7 * random.uniform())
-  let fast = 0
-  let slow = 0
-  for (let i = 0; i < n; i++) {
-    fast = keep * fast + (1 - keep) * size * random.normal() * Math.sqrt((1 + keep) / (1 - keep))
-    slow += (1 - Math.exp(-stepS / (5 * loop.closedLoopS))) * (fast - slow)
-    values[i] = loop.workingPoint.pv + slow
+/** The set point of a cascade's inner loop: slow against the loop itself. */
+function wanderingSetpoint({ random, loop }: Draft): SetpointProgramme {
+  return {
+    kind: 'wandering', base: loop.workingPoint.pv, standardDeviation: loop.setup.tolerance * (0.8 + 1.7 * random.uniform()),
+    timeConstantS: loop.closedLoopS * (40 + 80 * random.uniform()), seed: random.integer(1 << 30),
   }
-  return { kind: 'signal', values, stepS }
 }
 
 function marginOf(loop: DrawnLoop, stepS: number): { margin: number, periodS: number } {
@@ -437,7 +429,7 @@ function carryIn(draft: Draft, span: Span, options: DrawOptions): void {
   const { random, loop, scenario } = draft
   const own = loop.linear.kind === 'integrating' ? NaN : marginOf(loop, scenario.stepS).periodS
   const base = Number.isFinite(own) ? own : 6 * loop.closedLoopS
-  const periodS = base * 0.9 * 8 ** random.uniform()
+  const periodS = options.periodS ?? base * 0.9 * 8 ** random.uniform()
   requireVisible(periodS, draft, options)
   const shape = (['sine', 'sine', 'triangle', 'square'] as const)[random.integer(4)]
   const unit: LoadPart = { kind: 'periodic', periodS: Number(periodS.toPrecision(5)), amplitude: 1, shape, phase: random.uniform() }

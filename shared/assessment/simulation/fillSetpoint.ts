@@ -1,3 +1,4 @@
+import { addLoad } from './addLoad'
 import type { SetpointProgramme } from './scenario'
 
 /**
@@ -10,6 +11,11 @@ import type { SetpointProgramme } from './scenario'
 export function fillSetpoint(programme: SetpointProgramme, out: Float64Array, stepS: number): void {
   const n = out.length
   if (programme.kind === 'constant') { out.fill(programme.value); return }
+  if (programme.kind === 'wandering') {
+    out.fill(programme.base)
+    addLoad({ kind: 'coloured', standardDeviation: programme.standardDeviation, timeConstantS: programme.timeConstantS, seed: programme.seed }, out, stepS)
+    return
+  }
   if (programme.kind === 'signal') {
     const { values, stepS: signalStep } = programme
     const last = values.length - 1

@@ -48,6 +48,8 @@ export type SetpointProgramme =
   | { kind: 'constant', value: number }
   /** from each point on: hold its value, or ramp from the value before so as to arrive at this point */
   | { kind: 'points', start: number, points: { at: number, value: number, ramp: boolean }[] }
+  /** as the inner loop of a cascade sees it: slow coloured noise about a base */
+  | { kind: 'wandering', base: number, standardDeviation: number, timeConstantS: number, seed: number }
   /** a set point that comes from elsewhere, linearly interpolated */
   | { kind: 'signal', values: ArrayLike<number>, stepS: number }
 
