@@ -11,7 +11,7 @@ export interface QuantisationStep {
 const ON_GRID = 0.98
 /** How far from a whole multiple a change may lie, in steps. */
 const OFF_GRID = 0.05
-/** A step finer than this share of the median change is not looked for: it would be the rounding of the numbers. */
+/** A step finer than this share of the mean change is not looked for: it would be the rounding of the numbers. */
 const FINEST = 1e-6
 
 /**
@@ -25,23 +25,25 @@ const FINEST = 1e-6
  * @returns step and its ratio to the standard deviation (quantisation factor)
  * Source: N. F. Thornhill, M. A. A. S. Choudhury, S. L. Shah (2004) The impact of compression on data-driven process
  * analyses, J. Process Control 14:389-398 (factor step / standard deviation, from memory); the grid test is ours.
- * Reference: fixtures/reference/compression.json (quant_*). Cost O(n log n) at worst, few rounds.
+ * Reference: fixtures/reference/compression.json (quant_*). Cost O(n) for a signal on a coarse grid, O(n log n) at worst.
  */
 export function quantisationStep(x: Float64Array): QuantisationStep {
   const known = x.filter(v => v - v === 0)
   const changes = new Float64Array(known.length)
   let count = 0
   let smallest = Infinity
+  let total = 0
   for (let i = 1; i < known.length; i++) {
     const d = Math.abs(known[i] - known[i - 1])
     // smaller ones are the rounding of two decimal texts, as in 0.3 - 0.2 against 0.1
     if (d > 1e-12 * Math.max(Math.abs(known[i]), Math.abs(known[i - 1]))) {
       changes[count++] = d
+      total += d
       if (d < smallest) smallest = d
     }
   }
   if (count === 0) return { step: 0, factor: NaN }
-  const finest = FINEST * changes.subarray(0, count).slice().sort()[count >> 1]
+  const finest = FINEST * total / count
   const remainders = new Float64Array(count)
   for (let candidate = smallest; candidate > finest;) {
     const step = refine(changes, count, candidate)
