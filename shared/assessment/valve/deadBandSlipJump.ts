@@ -39,7 +39,7 @@ export function deadBandSlipJump(op: Float64Array, pv: Float64Array, processGain
   const sorted = pv.slice().sort()
   const range = sorted[Math.floor(0.95 * (pv.length - 1))] - sorted[Math.floor(0.05 * (pv.length - 1))]
   if (!(range > 0)) return insufficient('the process variable stands still')
-  const travels: number[] = [], jumps: number[] = []
+  const travels: number[] = [], jumps: number[] = [], stems: number[] = []
   for (let i = 0; i + 1 < turns.length; i++) {
     const from = turns[i], to = turns[i + 1]
     let at = from
@@ -47,13 +47,16 @@ export function deadBandSlipJump(op: Float64Array, pv: Float64Array, processGain
     if (at === to) continue
     travels.push(Math.abs(op[at] - op[from]))
     const after = Math.min(pv.length - 1, at + Math.max(1, Math.round(AT_ONCE * (to - from))))
-    jumps.push(Math.min(1, Math.abs(pv[after] - pv[Math.max(from, at - 1)]) / range))
+    const before = Math.max(from, at - 1)
+    const jump = Math.abs(pv[after] - pv[before])
+    jumps.push(Math.min(1, jump / range))
+    // Once it has slipped the stem follows: what the output moved meanwhile is no jump.
+    if (processGain !== null) stems.push(Math.max(0, jump / Math.abs(processGain) - Math.abs(op[after] - op[before])))
   }
   if (travels.length < FEWEST / 2) return insufficient('the process variable does not answer the turns of the output')
   const quantile = (values: number[], p: number) => [...values].sort((a, b) => a - b)[Math.round(p * (values.length - 1))]
-  const jumpShare = quantile(jumps, 0.5)
   return {
     stickBand: quantile(travels, 0.5), stickBandLow: quantile(travels, 0.25), stickBandHigh: quantile(travels, 0.75),
-    jumpShare, slipJump: processGain === null ? null : jumpShare * range / Math.abs(processGain), turns: travels.length,
+    jumpShare: quantile(jumps, 0.5), slipJump: processGain === null ? null : quantile(stems, 0.5), turns: travels.length,
   }
 }

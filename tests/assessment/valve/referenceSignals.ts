@@ -8,8 +8,12 @@ export function referenceSignal(name: string): Record<string, Float64Array> {
   return Object.fromEntries(head!.map((column, i) => [column, Float64Array.from(rows, row => Number(row[i]))]))
 }
 
+/** Values of a reference case, read by name in the tests. */
+// eslint-disable-next-line @typescript-eslint/no-explicit-any -- a fixture's values, of as many shapes as there are methods
+type Reference = any
+
 /** A case of fixtures/reference/<file>.json by the end of its id. */
-export function referenceCase(file: 'oscillation' | 'stiction' | 'idle', id: string): { inputs: any, expected: any } {
+export function referenceCase(file: 'oscillation' | 'stiction' | 'idle', id: string): { inputs: Reference, expected: Reference } {
   const { cases } = JSON.parse(readFileSync(new URL(`${file}.json`, folder), 'utf8'))
   const found = cases.find((c: { id: string }) => c.id.endsWith(`/${id}`))
   if (!found) throw new Error(`no reference case ${id} in ${file}.json`)
