@@ -2,6 +2,8 @@ const HALF_WIDTH = 3
 const WIDTH = 2 * HALF_WIDTH + 1
 /** Windows looked at for the record's own scale. */
 const SCALE_WINDOWS = 4096
+/** Changes in no more than this share of a record at rest are no scale of its own: they are the spikes (ours). */
+const RARE = 0.05
 /** MAD of a normal variable is 0.6745 standard deviations. */
 const MAD_TO_SD = 1.482602218505602
 
@@ -30,10 +32,14 @@ export function spikes(x: Float64Array, options: { threshold?: number, quantum?:
   // the whole record's scale from evenly spread windows: enough for a floor, and a tenth of the work
   const stride = Math.max(1, Math.floor(n / SCALE_WINDOWS))
   const distances: number[] = []
+  let looked = 0
   for (let i = HALF_WIDTH; i + HALF_WIDTH < n; i += stride) {
-    if (load(x, i, window)) distances.push(Math.abs(x[i] - middle(window)))
+    if (!load(x, i, window)) continue
+    looked++
+    // where most samples repeat the one before, the zeros would make the scale 0 and every change a spike
+    if (x[i] !== middle(window)) distances.push(Math.abs(x[i] - window[HALF_WIDTH]))
   }
-  const overall = distances.length > 0 ? MAD_TO_SD * Float64Array.from(distances).sort()[distances.length >> 1] : 0
+  const overall = distances.length > RARE * looked ? MAD_TO_SD * Float64Array.from(distances).sort()[distances.length >> 1] : 0
   const least = threshold * Math.max(overall, quantum)
 
   const found: number[] = []

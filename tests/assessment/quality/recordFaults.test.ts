@@ -70,6 +70,14 @@ describe('spikes', () => {
     expect([...spikes(x, { quantum: 0.1 })]).toEqual([])
     expect([...spikes(x, { quantum: 0.01 })]).toEqual([50])
   })
+  it('does not call the changes of a record that mostly stands still spikes', () => {
+    const g = seededRandom(6)
+    // holds its value, leaves it for one sample by an ordinary amount, in every fifth sample
+    const x = Float64Array.from({ length: 2000 }, (_, i) => i % 5 === 0 ? 50 + g.normal() : 50)
+    expect(spikes(x).length).toBeLessThan(5)
+    x[1001] = 90
+    expect([...spikes(x)]).toContain(1001)
+  })
   it('moves with offset and scale, and backwards', () => {
     const x = noise()
     x[1000] = 40
