@@ -24,7 +24,9 @@ export function compareModels(stretches: readonly FitStretch[], options: Omit<Fi
   const [first, second, integrating] = candidates.map(c => c.fit)
   const bayes = (fit: ModelFit | InsufficientFit) => fit.status === 'ok' ? fit.criterion : fit.best?.criterion ?? Infinity
   const akaike = (fit: ModelFit | InsufficientFit) => fit.status === 'ok' ? fit.akaike : fit.best?.akaike ?? Infinity
-  if (bayes(integrating) < Math.min(bayes(first), bayes(second))) {
+  const longest = Math.max(...stretches.map(s => s.pv.length)) * options.interval
+  const lag = (first.status === 'ok' ? first : first.best)?.parameters.timeConstant?.value ?? Infinity
+  if (bayes(integrating) < Math.min(bayes(first), bayes(second)) || (lag > longest && integrating.status === 'ok')) {
     return { best: integrating, candidates, reason: 'Over the time of the stretches the process looks like an integrator: a lag adds nothing.' }
   }
   if (akaike(second) < akaike(first) - 4) {

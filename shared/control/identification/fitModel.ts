@@ -84,11 +84,11 @@ export function fitModel(stretches: readonly FitStretch[], options: FitOptions):
 
   // Start: for every dead time and lag the linear parameters by least squares, whitened once.
   const starts: { cost: number, nonlinear: number[] }[] = []
-  const deadTimes = spread(smallestDeadTime, largestDeadTime, interval, 14)
-  const lags = kind === 'integrating' ? [0] : geometric(interval, longest, 9)
+  const deadTimes = spread(smallestDeadTime, largestDeadTime, interval, 12)
+  const lags = kind === 'integrating' ? [0] : geometric(2 * interval, longest, 8)
   for (const deadTime of deadTimes) {
     for (const lag of lags) {
-      for (const ratio of kind === 'sopdt' ? [0.15, 0.6] : [0]) {
+      for (const ratio of kind === 'sopdt' ? [0.4] : [0]) {
         const nonlinear = kind === 'integrating' ? [deadTime] : kind === 'fopdt' ? [deadTime, Math.log(lag)] : [deadTime, Math.log(lag), Math.log(lag * ratio)]
         starts.push({ cost: problem.projectedCost(nonlinear), nonlinear })
       }
@@ -158,13 +158,7 @@ class Problem {
     return this.stretches.map(({ op }) => {
       const x = unitResponse(op, this.interval, lags, nonlinear[0], this.hold, this.lead, new Float64Array(op.length)).subarray(this.lead)
       const n = x.length
-      const modes = this.kind === 'integrating'
-        ? [Float64Array.from({ length: n }, (_, k) => k / n)]
-        : lags.map((lag, i) => {
-            // Two nearly equal lags: the second mode as t exp(-t / lag), which stays independent of the first.
-            const near = i === 1 && Math.abs(lag / lags[0] - 1) < 0.05
-            return Float64Array.from({ length: n }, (_, k) => (near ? k * this.interval / lag : 1) * Math.exp(-k * this.interval / lag))
-          })
+      const modes = this.kind === 'integrating' ? [ramp(n)] : lags.map((lag, i) => fading(n, this.interval / lag, i === 1 && Math.abs(lag / lags[0] - 1) < 0.05))
       return [x, new Float64Array(n).fill(1), ...modes]
     })
   }
@@ -199,7 +193,12 @@ class Problem {
   }
 
   private errors(outputs: Float64Array[]): Float64Array[] {
-    return outputs.map((y, s) => y.map((value, k) => this.stretches[s].pv[this.lead + k] - value))
+    return outputs.map((y, s) => {
+      const { pv } = this.stretches[s]
+      const error = new Float64Array(y.length)
+      for (let k = 0; k < y.length; k++) error[k] = pv[this.lead + k] - y[k]
+      return error
+    })
   }
 
   private linearFit(regressors: Float64Array[][], noise: Float64Array): Float64Array {
@@ -247,18 +246,19 @@ class Problem {
     return { noise, variance: Math.max(left / count, 1e-300) }
   }
 
-  projectedCost(nonlinear: number[]): number {
+  /** Errors of the best linear parameters after a rough whitening, for the nonlinear ones given. */
+  private projectedErrors(nonlinear: number[]): Float64Array[] {
     const regressors = this.regressors(nonlinear)
-    let noise = new Float64Array(0)
-    for (let i = 0; i < 2; i++) noise = this.noiseFit(this.errors(this.outputs(regressors, this.linearFit(regressors, noise))), 3).noise as Float64Array<ArrayBuffer>
-    return this.noiseFit(this.errors(this.outputs(regressors, this.linearFit(regressors, noise))), 3).variance
+    const plain = this.errors(this.outputs(regressors, this.linearFit(regressors, new Float64Array(0))))
+    return this.errors(this.outputs(regressors, this.linearFit(regressors, this.noiseFit(plain, 3).noise)))
+  }
+
+  projectedCost(nonlinear: number[]): number {
+    return this.noiseFit(this.projectedErrors(nonlinear), 3).variance
   }
 
   chooseNoiseOrder(nonlinear: number[]): number {
-    const regressors = this.regressors(nonlinear)
-    let noise = new Float64Array(0)
-    for (let i = 0; i < 2; i++) noise = this.noiseFit(this.errors(this.outputs(regressors, this.linearFit(regressors, noise))), 3).noise as Float64Array<ArrayBuffer>
-    const errors = this.errors(this.outputs(regressors, this.linearFit(regressors, noise)))
+    const errors = this.projectedErrors(nonlinear)
     const largest = Math.max(1, Math.min(15, Math.floor(this.samples / 25)))
     let best = 1
     let bestCriterion = Infinity
@@ -276,8 +276,8 @@ class Problem {
   refine(start: number[], noiseOrder: number, smallestDeadTime: number, largestDeadTime: number): Solution | null {
     let nonlinear = [...start]
     let regressors = this.regressors(nonlinear)
-    let noise = new Float64Array(0)
-    for (let i = 0; i < 3; i++) noise = this.noiseFit(this.errors(this.outputs(regressors, this.linearFit(regressors, noise))), noiseOrder).noise as Float64Array<ArrayBuffer>
+    let noise: Float64Array = new Float64Array(0)
+    for (let i = 0; i < 3; i++) noise = this.noiseFit(this.errors(this.outputs(regressors, this.linearFit(regressors, noise))), noiseOrder).noise
     let linear = this.linearFit(regressors, noise)
     let cost = this.cost(regressors, linear, noise)
     const q = nonlinear.length
@@ -345,7 +345,11 @@ class Problem {
       }
       const up = shifted(1)
       const down = shifted(-1)
-      return up.y.map((y, s) => y.map((v, k) => (v - down.y[s][k]) / (up.at - down.at)))
+      return up.y.map((y, s) => {
+        const slope = new Float64Array(y.length)
+        for (let k = 0; k < y.length; k++) slope[k] = (y[k] - down.y[s][k]) / (up.at - down.at)
+        return slope
+      })
     })
     const a = new Float64Array(total * total)
     const b = new Float64Array(total)
@@ -447,12 +451,31 @@ class Problem {
 /** y + a1 y(-1) + ...; the first samples, whose past is unknown, are not meaningful. */
 function filter(x: Float64Array, noise: Float64Array): Float64Array {
   const p = noise.length
+  if (p === 0) return x
   const out = new Float64Array(x.length)
   for (let k = p; k < x.length; k++) {
     let sum = x[k]
     for (let i = 0; i < p; i++) sum += noise[i] * x[k - 1 - i]
     out[k] = sum
   }
+  return out
+}
+
+/** exp(-k rate), or k rate exp(-k rate): the second of two nearly equal lags, which so stays independent of the first. */
+function fading(n: number, rate: number, second: boolean): Float64Array {
+  const out = new Float64Array(n)
+  const f = Math.exp(-rate)
+  let power = 1
+  for (let k = 0; k < n && power > 1e-12; k++) {
+    out[k] = second ? k * rate * power : power
+    power *= f
+  }
+  return out
+}
+
+function ramp(n: number): Float64Array {
+  const out = new Float64Array(n)
+  for (let k = 0; k < n; k++) out[k] = k / n
   return out
 }
 
