@@ -1,5 +1,5 @@
 import type { Knex } from 'knex'
-import { findOrInsertArea } from '../../../db/repositories/areas'
+import { ensureAreas } from '../../../db/repositories/areas'
 import { insertAudit } from '../../../db/repositories/audit'
 import { findLoop, updateLoop, type LoopConfig } from '../../../db/repositories/loops'
 import { insertDue, listLoopWeekKeys, notifyWork } from '../../../db/repositories/loopWeekWrites'
@@ -18,7 +18,7 @@ export async function changeLoop(db: Knex, by: { userId: number | null, name: st
     if (!loop) throw new Refusal(404, 'not_found', `There is no loop named ${tag}.`)
     if (version !== undefined && version !== loop.version) throw new Refusal(409, 'changed_meanwhile', `Somebody changed ${tag} meanwhile. Look at it again and save once more.`, { version: loop.version })
     const change: Partial<LoopConfig> = { ...fields }
-    if (area !== undefined) change.areaId = area ? await findOrInsertArea(trx, area) : null
+    if (area !== undefined) change.areaId = area ? (await ensureAreas(trx, [area])).get(area)! : null
     if (change.pvLow !== undefined || change.pvHigh !== undefined) change.rangeGuessed = false
     const changed = (Object.keys(change) as (keyof LoopConfig)[]).filter(key => JSON.stringify(change[key]) !== JSON.stringify(loop[key]))
     if (changed.length === 0) return { changed: [], weeks: 0 }
