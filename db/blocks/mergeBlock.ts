@@ -13,14 +13,15 @@ export function sameBlock(a: TrendBlock, b: TrendBlock): boolean {
     && sameBytes(a.pv, b.pv) && sameBytes(a.sp, b.sp) && sameBytes(a.op, b.op) && sameBytes(a.mode, b.mode) && sameBytes(a.timestamps, b.timestamps)
 }
 
+export interface BlockMerge { block: TrendBlock | null, changed: number, added: number, fromMs: number, toMs: number }
+
 /**
  * Lays a later block over the stored one of the same loop and day, sample by sample.
  * `block` is null when the later one brings nothing new, so that nothing needs to be written or assessed again.
  */
-export function mergeBlock(stored: TrendBlock, later: TrendBlock): { block: TrendBlock | null, changed: number, added: number } {
+export function mergeBlock(stored: TrendBlock, later: TrendBlock): BlockMerge {
   if (stored.loopId !== later.loopId || stored.day !== later.day) throw new RangeError('mergeBlock: the blocks are of different loops or days')
-  if (sameBlock(stored, later)) return { block: null, changed: 0, added: 0 }
-  const { samples, changed, added } = mergeSamples(decodeBlock(stored), decodeBlock(later))
-  if (changed === 0 && added === 0) return { block: null, changed, added }
-  return { block: encodeBlock(stored.loopId, samples), changed, added }
+  if (sameBlock(stored, later)) return { block: null, changed: 0, added: 0, fromMs: NaN, toMs: NaN }
+  const { samples, ...rest } = mergeSamples(decodeBlock(stored), decodeBlock(later))
+  return { block: rest.changed + rest.added === 0 ? null : encodeBlock(stored.loopId, samples), ...rest }
 }

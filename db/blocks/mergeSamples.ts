@@ -3,9 +3,10 @@ import { MODE_UNKNOWN, type DaySamples } from './types'
 /**
  * Lays later samples over earlier ones of the same loop and day. A value of the later wins; a missing value is no
  * sample and never wipes out one that is there.
- * @returns the union, how many values that were there now differ, and how many are new
+ * @returns the union, how many values that were there now differ, how many are new, and the first and last time (epoch
+ * ms) at which something is different or new; NaN when nothing is
  */
-export function mergeSamples(earlier: DaySamples, later: DaySamples): { samples: DaySamples, changed: number, added: number } {
+export function mergeSamples(earlier: DaySamples, later: DaySamples): { samples: DaySamples, changed: number, added: number, fromMs: number, toMs: number } {
   const a = earlier.t
   const b = later.t
   const room = a.length + b.length
@@ -23,6 +24,12 @@ export function mergeSamples(earlier: DaySamples, later: DaySamples): { samples:
 
   let changed = 0
   let added = 0
+  let first = n
+  let last = -1
+  const touch = (i: number) => {
+    if (i < first) first = i
+    if (i > last) last = i
+  }
   const values = (x: Float64Array | null, y: Float64Array | null): Float64Array | null => {
     if (!x && !y) return null
     const out = new Float64Array(n)
@@ -32,8 +39,10 @@ export function mergeSamples(earlier: DaySamples, later: DaySamples): { samples:
       if (now !== now) { out[i] = old }
       else {
         out[i] = now
+        if (old === now) continue
         if (old !== old) added++
-        else if (old !== now) changed++
+        else changed++
+        touch(i)
       }
     }
     return out
@@ -54,8 +63,10 @@ export function mergeSamples(earlier: DaySamples, later: DaySamples): { samples:
       if (now === MODE_UNKNOWN) { out[i] = old }
       else {
         out[i] = now
+        if (old === now) continue
         if (old === MODE_UNKNOWN) added++
-        else if (old !== now) changed++
+        else changed++
+        touch(i)
       }
     }
     return out
@@ -65,5 +76,5 @@ export function mergeSamples(earlier: DaySamples, later: DaySamples): { samples:
     pv: values(earlier.pv, later.pv), sp: values(earlier.sp, later.sp), op: values(earlier.op, later.op),
     mode: modes(earlier.mode, later.mode), modeNames,
   }
-  return { samples, changed, added }
+  return { samples, changed, added, fromMs: last < 0 ? NaN : t[first], toMs: last < 0 ? NaN : t[last] }
 }

@@ -7,6 +7,7 @@ import { up as assessments } from './005-assessments'
 import { up as tickets } from './006-tickets'
 import { up as mail } from './007-mail'
 import { up as tuning } from './008-tuning'
+import { up as assessmentsDue } from './009-assessments-due'
 
 /** In order. Never edited once landed: add one at the end. */
 export const migrations: { name: string, up: (db: Knex) => Promise<void> }[] = [
@@ -18,4 +19,5 @@ export const migrations: { name: string, up: (db: Knex) => Promise<void> }[] = [
   { name: '006-tickets', up: tickets },
   { name: '007-mail', up: mail },
   { name: '008-tuning', up: tuning },
+  { name: '009-assessments-due', up: assessmentsDue },
 ]

@@ -1,4 +1,5 @@
 import { describe, expect, it } from 'vitest'
+import { appendBlock } from '../../db/blocks/appendBlock'
 import { decodeBlock } from '../../db/blocks/decodeBlock'
 import { decodeColumn } from '../../db/blocks/decodeColumn'
 import { encodeBlock } from '../../db/blocks/encodeBlock'
@@ -91,12 +92,25 @@ describe('a block', () => {
   })
 })
 
+describe('appending', () => {
+  it('gives what one block of all samples would decode to, on a grid, over a gap, and with signals that come and go', () => {
+    const whole = day({ t: grid(9), pv: Float64Array.of(1, 2, 3, 4, 5, 6, 7, 8, 9), mode: Uint8Array.of(0, 0, 0, 1, 1, 1, 0, 0, 1), modeNames: ['AUTO', 'MAN'] })
+    const joined = appendBlock(appendBlock(encodeBlock(1, whole, 0, 3), encodeBlock(1, whole, 3, 4))!, encodeBlock(1, whole, 4, 9))!
+    expect(decodeBlock(joined)).toEqual(whole)
+    expect(joined.intervalMs).toBe(10_000)
+    const late = day({ t: grid(2, DAY + 200_000, 7_000), op: Float64Array.of(5, 6) })
+    const both = appendBlock(encodeBlock(1, whole), encodeBlock(1, late))!
+    expect(decodeBlock(both)).toEqual(mergeSamples(whole, late).samples)
+    expect(appendBlock(encodeBlock(1, late), encodeBlock(1, whole))).toBeNull()
+  })
+})
+
 describe('later samples over earlier ones', () => {
   const first = day({ t: grid(4), pv: Float64Array.of(1, 2, NaN, 4), mode: Uint8Array.of(0, 0, 0, 0), modeNames: ['AUTO'] })
 
   it('later wins value by value, a missing value wipes out nothing, and changes are counted', () => {
     const later = day({ t: Float64Array.of(DAY + 10_000, DAY + 20_000, DAY + 30_000, DAY + 35_000), pv: Float64Array.of(2.5, 3, NaN, 9), sp: Float64Array.of(5, 5, 5, NaN), mode: Uint8Array.of(0, 1, MODE_UNKNOWN, 1), modeNames: ['MAN', 'AUTO'] })
-    const { samples, changed, added } = mergeSamples(first, later)
+    const { samples, changed, added, fromMs, toMs } = mergeSamples(first, later)
     expect(Array.from(samples.t)).toEqual([DAY, DAY + 10_000, DAY + 20_000, DAY + 30_000, DAY + 35_000])
     expect(Array.from(samples.pv!)).toEqual([1, 2.5, 3, 4, 9])
     expect(Array.from(samples.sp!)).toEqual([NaN, 5, 5, 5, NaN])
@@ -104,13 +118,14 @@ describe('later samples over earlier ones', () => {
     expect(Array.from(samples.mode!)).toEqual([0, 1, 0, 0, 0])
     expect(changed).toBe(2) // PV 2 -> 2.5, AUTO -> MAN
     expect(added).toBe(2 + 3 + 1)
+    expect([fromMs, toMs]).toEqual([DAY + 10_000, DAY + 35_000])
   })
 
   it('the same again changes nothing, whatever the order of the two', () => {
     const block = encodeBlock(1, first)
-    expect(mergeBlock(block, encodeBlock(1, first))).toEqual({ block: null, changed: 0, added: 0 })
+    expect(mergeBlock(block, encodeBlock(1, first))).toMatchObject({ block: null, changed: 0, added: 0 })
     const part = encodeBlock(1, day({ t: grid(2), pv: Float64Array.of(1, 2) }))
-    expect(mergeBlock(block, part)).toEqual({ block: null, changed: 0, added: 0 })
+    expect(mergeBlock(block, part)).toMatchObject({ block: null, changed: 0, added: 0 })
     const grown = mergeBlock(part, block)
     expect(grown.changed).toBe(0)
     expect(decodeBlock(grown.block!)).toEqual(first)

@@ -1,0 +1,4 @@
+import type { Knex } from 'knex'
+
+/** What looks at a whole week once all its loops are assessed, in this order. Each may run again for the same week. */
+export const afterAssessment: ((trx: Knex.Transaction, week: string) => Promise<void>)[] = []

@@ -1,0 +1,63 @@
+import { availableParallelism } from 'node:os'
+import { resolve } from 'node:path'
+import type { Knex } from 'knex'
+import type { Environment } from '../services/environment'
+import { assessDue } from '../services/assessments/assessDue'
+import { readNextImports } from '../services/imports/readNextImports'
+import { tidyUploads } from '../services/imports/tidyUploads'
+import type { AssessAnswer, AssessTask } from '../threads/assess'
+import { startBells } from './bells'
+import { every } from './every'
+import { threadPool } from './threadPool'
+
+/** What a killed worker or a missed bell left lies at most so long. */
+const SWEEP_MS = 5000
+const HOUR_MS = 3_600_000
+
+/** Reads uploads and assesses loop-weeks for as long as the worker lives. Answers how to stop it. */
+export async function startImports(db: Knex, environment: Environment): Promise<() => Promise<void>> {
+  const threads = environment.WORKER_THREADS ?? availableParallelism()
+  const dataDir = resolve(environment.DATA_DIR)
+  const readers = threadPool('readImport', 1)
+  const assessors = threadPool('assess', threads)
+  let stopping = false
+  const stopped = () => stopping
+  const read = (importId: number) => readers.run({ databaseUrl: environment.DATABASE_URL, importId, dataDir }) as Promise<void>
+  const assess = (task: AssessTask) => assessors.run(task) as Promise<AssessAnswer>
+
+  const reading = again(() => readNextImports(db, environment.DATABASE_URL, read, stopped), stopped, 'Reading')
+  const assessing = again(() => assessDue(db, assess, { lanes: 2, batch: threads * 4, stopped }), stopped, 'Assessment')
+  const stopSweep = every(SWEEP_MS, 'Sweep', async () => {
+    reading.ring()
+    assessing.ring()
+  })
+  const stopTidy = every(HOUR_MS, 'Uploads', () => tidyUploads(db, dataDir, new Date()))
+  const stopBells = await startBells(environment.DATABASE_URL, job => (job === 'read-imports' ? reading : assessing).ring())
+  return async () => {
+    stopping = true
+    await Promise.all([stopSweep(), stopTidy(), stopBells()])
+    // a long reading is cut off: its transaction rolls back and it is read again at the next start
+    await readers.destroy()
+    await Promise.race([assessing.done(), new Promise(r => setTimeout(r, 5000))])
+    await assessors.destroy()
+  }
+}
+
+/** Runs work when rung, never twice at a time; rung while it runs, it runs once more. */
+function again(work: () => Promise<void>, stopped: () => boolean, name: string) {
+  let running: Promise<void> | null = null
+  let rung = false
+  const ring = () => {
+    if (stopped()) return
+    if (running) {
+      rung = true
+      return
+    }
+    rung = false
+    running = work().catch((error: Error) => { if (!stopped()) console.error(`${name}:`, error.message) }).finally(() => {
+      running = null
+      if (rung) ring()
+    })
+  }
+  return { ring, done: async () => { await running } }
+}
