@@ -1,4 +1,5 @@
 import { welchSpectrum } from '../spectrum/welchSpectrum'
+import { variance } from '../statistics/variance'
 import { insufficient, type Insufficient } from '../types'
 
 /**
@@ -24,10 +25,9 @@ export function noiseShare(signal: Float64Array, { sampleIntervalS, settlingS }:
   if (segmentLength < 16 || segmentLength > signal.length) return insufficient('too few samples')
   const { frequencyHz, power } = welchSpectrum(signal, { sampleIntervalS, segmentLength })
   // Against the variance of the whole record: segments do not see what is slower than they are long.
-  let mean = 0, variance = 0, above = 0
-  for (const value of signal) mean += value / signal.length
-  for (const value of signal) variance += (value - mean) ** 2 / signal.length
-  if (!(variance > 0)) return insufficient('the signal stands still')
+  const total = variance(signal, 0)
+  let above = 0
+  if (!(total > 0)) return insufficient('the signal stands still')
   for (let k = 1; k < power.length; k++) if (frequencyHz[k] > bandwidthHz) above += power[k] * frequencyHz[1]
-  return Math.min(1, above / variance)
+  return Math.min(1, above / total)
 }

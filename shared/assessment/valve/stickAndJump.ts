@@ -13,6 +13,8 @@ export interface StickAndJump {
 /** Samples to a period of the output after averaging down. */
 const PER_PERIOD = 24
 const FEWEST_TURNS = 8
+/** Share of the 95 % quantile of its speed below which the process variable stands: 0.25 of the travel between two sines. */
+const STILL = 0.25
 /** Both shares must lie above: half-way from what sines and noise give to what a sticking valve gives (ours). */
 const LIMIT = 0.55
 
@@ -38,13 +40,16 @@ export function stickAndJump(op: Float64Array, pv: Float64Array): StickAndJump |
   const speed = Float64Array.from({ length: n }, (_, i) => Math.abs(y[i + 1] - y[i]))
   const travel = speed.reduce((s, v) => s + v, 0)
   if (!(travel > 0)) return insufficient('the process variable stands still')
+  const ranked = speed.slice().sort()
+  // Against the speed of its jumps, not its mean speed: noise on a standing process variable must not pass for movement.
+  const still = STILL * ranked[Math.floor(0.95 * (n - 1))]
   let total = 0, standing = 0
   for (let i = 0; i < n; i++) {
     const move = Math.abs(u[i + 1] - u[i])
     total += move
-    if (speed[i] < 0.4 * travel / n) standing += move
+    if (speed[i] < still) standing += move
   }
-  const fastest = speed.slice().sort().subarray(n - Math.round(n / 5)).reduce((s, v) => s + v, 0)
+  const fastest = ranked.subarray(n - Math.round(n / 5)).reduce((s, v) => s + v, 0)
   const standingTravel = standing / total, jumpShare = fastest / travel
   return { standingTravel, jumpShare, says: standingTravel > LIMIT && jumpShare > LIMIT ? 'sticking' : 'undecided' }
 }
