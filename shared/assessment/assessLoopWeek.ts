@@ -1,41 +1,45 @@
 /**
- * Assesses one loop over one ISO week: measures, ledger, oscillations, benchmark, valve tests, verdict, and how each figure was made.
- * Pure; its arguments are left alone. About 10 to 40 ms for a week at 10 s.
+ * Assesses one loop over one ISO week: measures, ledger, oscillations, benchmark, valve tests, verdict, and how each figure was
+ * made. Pure; its arguments are left alone. Cost: some tens of milliseconds for a week at 10 s.
  */
-import { findHunting } from './verdict/findHunting'
+import { errorMeasures } from './error/errorMeasures'
+import { onOffCycle } from './error/onOffCycle'
+import { valveMovement } from './error/valveMovement'
+import { pvOpOf, rhythmOf } from './explanation/drawings'
+import { explainBenchmark } from './explanation/explainBenchmark'
+import { Explainer } from './explanation/Explainer'
+import { explainQuality, middleOf } from './explanation/explainQuality'
+import { explainResponses } from './explanation/explainResponses'
+import { sentence } from './explanation/sentence'
+import { buildLedger, mergeSpans } from './ledger/buildLedger'
+import { analysisSeries, type AnalysisSeries } from './preparation/analysisSeries'
+import { AT_HIGH, AT_LOW, FROZEN, MODE_KNOWN, OFF_NORMAL, prepareRecord, RECEIVED, type PreparedRecord } from './preparation/prepareRecord'
+import { setpointActivity } from './preparation/setpointActivity'
 import { frozenSpans } from './quality/frozenSpans'
 import { quantisationStep } from './quality/quantisationStep'
-import { compressionFactor } from './quality/compressionFactor'
-import { varianceBenchmark } from './benchmark/varianceBenchmark'
-import { ratioByHorizon } from './benchmark/ratioByHorizon'
-import { delaySamples } from './benchmark/delaySamples'
-import { autocorrelation } from './statistics/autocorrelation'
-import { welchSpectrum } from './spectrum/welchSpectrum'
-import { buildLedger, mergeSpans } from './ledger/buildLedger'
-import { errorMeasures } from './error/errorMeasures'
-import { valveMovement } from './error/valveMovement'
-import { analysisSeries, type AnalysisSeries } from './preparation/analysisSeries'
-import { AT_HIGH, AT_LOW, FROZEN, MODE_KNOWN, OFF_NORMAL, prepareRecord, RECEIVED } from './preparation/prepareRecord'
-import { setpointActivity } from './preparation/setpointActivity'
-import { Explainer } from './explanation/Explainer'
-import { cycleShape, type CycleShape } from './verdict/cycleShape'
+import { isInsufficient, type LoopRecord, type LoopSetup, type LoopWeekAssessment, type Oscillation, type TimeSpan, type WeekFrame } from './types'
+import { cycleShape } from './verdict/cycleShape'
 import { errorCharacter } from './verdict/errorCharacter'
+import { fastSwing } from './verdict/fastSwing'
+import { findHunting } from './verdict/findHunting'
 import { gatherFeatures, spansOf, type FeatureValues } from './verdict/gatherFeatures'
+import { halfCycles } from './verdict/halfCycles'
 import { judge } from './verdict/judge'
 import { readingCharacter } from './verdict/readingCharacter'
-import { isInsufficient, type LoopRecord, type LoopSetup, type LoopWeekAssessment, type Oscillation, type TimeSpan, type WeekFrame } from './types'
+import { recoveries } from './verdict/recoveries'
+import { stickFit } from './verdict/stickFit'
+import { valvePanel } from './verdict/valvePanel'
 
 /** Changes whenever a figure could come out differently; stands beside every stored assessment. */
 export const METHOD_VERSION = '2026.1'
-
-const QUALITY_SAMPLES = 20_000
-const BENCHMARK_SAMPLES = 20_000
-const COMPRESSION_LIMIT = 3
 
 export interface AssessOptions {
   /** receives what the likelihood tables look at; for calibration */
   features?: (values: FeatureValues) => void
 }
+
+/** Below this the record holds too little to look for patterns. */
+const LEAST_SAMPLES = 64
 
 /**
  * @param record samples of one loop; those outside the week are ignored
@@ -43,86 +47,69 @@ export interface AssessOptions {
  * @throws RangeError on a set-up that contradicts itself, or time stamps that do not ascend
  */
 export function assessLoopWeek(record: LoopRecord, setup: LoopSetup, week: WeekFrame, outages: TimeSpan[], options: AssessOptions = {}): LoopWeekAssessment {
-  const edges = week.hourEdges
-  const weekMs = edges[edges.length - 1] - edges[0]
   const prepared = prepareRecord(record, setup, week)
   const { n, flags, intervalS } = prepared
   const pvSpan = setup.pvHigh - setup.pvLow
   const opSpan = setup.opHigh - setup.opLow
-  const window: TimeSpan = n > 0
+  const edges = week.hourEdges
+  const explain = new Explainer(n > 0
     ? { fromMs: prepared.t[0], toMs: prepared.t[n - 1] + (intervalS > 0 ? intervalS * 1000 : 0) }
-    : { fromMs: edges[0], toMs: edges[edges.length - 1] }
-  const explain = new Explainer(window)
+    : { fromMs: edges[0], toMs: edges[edges.length - 1] })
+
   const step = n > 1 ? quantisationStep(middleOf(prepared.pv)) : { step: 0, factor: NaN }
   if (n > 1) for (const s of frozenSpans(prepared.t, prepared.pv, prepared.op, prepared.sp, { horizonS: setup.settlingS, opSpan })) for (let i = s.from; i < s.to; i++) flags[i] |= FROZEN
-
-  const count = countFlags(flags, prepared.pv, prepared.op)
-  const usableS = count.usable * intervalS
-  explain.set('coverage', n > 0 ? Math.min(1, (usableS * 1000) / weekMs) : 0, count.usable, { nativeIntervalS: intervalS, weekHours: weekMs / 3_600_000 }, { usableSamples: count.usable, longGaps: prepared.longGaps, missingSlots: prepared.missingSlots }, 'No samples in this week.')
-  if (explain.measures.coverage === null) explain.measures.coverage = 0
-  const parameters = { nativeIntervalS: intervalS }
-
-  if (prepared.hasMode)
-    explain.set('serviceFactor', count.known > 0 ? 1 - count.offNormal / count.known : NaN, count.known, { ...parameters, normalModes: setup.normalModes.join(' ') }, { knownSamples: count.known, normalSamples: count.known - count.offNormal })
-  else explain.withhold('serviceFactor', 'The record has no MODE, so time in the normal mode is not known.')
-
-  const saturation = ['saturationFraction', 'saturationLowFraction', 'saturationHighFraction'] as const
-  if (!prepared.op) explain.withholdAll([...saturation, 'valveTravelPerDay', 'reversalsPerDay'], 'The record has no OP.')
-  else {
-    if (setup.form === 'onOff') explain.withholdAll([...saturation], 'An on-off output is always at one of its limits.')
-    else {
-      const limits = { ...parameters, opLow: setup.opLow, opHigh: setup.opHigh, marginPercent: 0.5, leastSamples: 3 }
-      explain.set('saturationFraction', (count.low + count.high) / count.op, count.op, limits, { samplesAtLimits: count.low + count.high })
-      explain.set('saturationLowFraction', count.low / count.op, count.op, limits, { samplesAtLow: count.low })
-      explain.set('saturationHighFraction', count.high / count.op, count.op, limits, { samplesAtHigh: count.high })
-    }
-    const m = valveMovement(prepared.op, prepared.stretches, intervalS, opSpan)
-    explain.set('valveTravelPerDay', m.travelPerDay, m.samples, { ...parameters, opSpan }, {})
-    explain.set('reversalsPerDay', m.reversalsPerDay, m.samples, { ...parameters, opSpan }, { noiseBand: m.noiseBand })
-    if (setup.form === 'onOff') explain.set('switchingsPerDay', m.switchingsPerDay, m.samples, { ...parameters, opSpan }, {})
-  }
-
-  const compression = compressionOf(explain, prepared.pv, step)
-  explain.set('frozenFraction', count.frozen / count.received, count.received, { horizonS: setup.settlingS, opShare: 0.02 }, { frozenSamples: count.frozen })
-  explain.set('outOfRangeFraction', prepared.outOfRange / count.received, count.received, { pvLow: setup.pvLow, pvHigh: setup.pvHigh, marginFraction: 0.05 }, { samplesOutOfRange: prepared.outOfRange })
-
-  const error = errorMeasures(prepared, setup.tolerance)
-  const noError = prepared.sp ? 'No sample has both SP and PV in a normal mode.' : 'The record has no SP, so there is no control error.'
-  explain.set('iaePerHour', error.meanAbsoluteError, error.errorSamples, parameters, {}, noError)
-  explain.set('iaePercentSpan', (100 * error.meanAbsoluteError) / pvSpan, error.errorSamples, { ...parameters, pvSpan }, { iaePerHour: error.meanAbsoluteError }, noError)
-  explain.set('offset', error.offset, error.errorSamples, parameters, {}, noError)
-  explain.set('standardDeviation', error.standardDeviation, error.pvSamples, parameters, { meanPv: error.pvMean })
-  explain.set('timeInTolerance', error.timeInTolerance, error.anySamples, { ...parameters, tolerance: setup.tolerance }, {}, noError)
+  const usableS = explainTime(explain, prepared, setup, edges)
+  const compression = explainQuality(explain, prepared.pv, step)
+  explainError(explain, prepared, setup)
 
   const reading = readingCharacter(prepared, pvSpan, step.step)
+  const noise = Number.isFinite(reading.noise) ? reading.noise : 0
   const activity = setpointActivity(prepared.sp, pvSpan)
   const series = n > 1 ? analysisSeries(prepared, setup.settlingS) : null
-  const hunting = series && series.used >= 64
-    ? findHunting(prepared, series, setup, setup.form === 'onOff' ? setup.tolerance : setup.tolerance / 2, Number.isFinite(reading.noise) ? reading.noise : 0)
-    : null
+  const enough = series !== null && series.used >= LEAST_SAMPLES
+  const tooFew = 'Too few samples in a normal mode and away from the limits.'
+  const meaningful = setup.form === 'onOff' ? setup.tolerance : setup.tolerance / 2
+  const hunting = enough ? findHunting(prepared, series, setup, meaningful, noise) : null
   const oscillations = hunting?.oscillations ?? []
   const strongest = oscillations[0]
-  const ledger = buildLedger(prepared, setup.tolerance, week, oscillations.flatMap(o => o.episodes), outages)
-  const oscillating = ['oscillationIndex', 'oscillationPeriod', 'oscillationAmplitude', 'oscillationStrength'] as const
-  if (strongest && series && hunting) {
-    const huntingS = mergeSpans(oscillations.flatMap(o => o.episodes)).reduce((sum, e) => sum + e.toMs - e.fromMs, 0) / 1000
-    const p = { analysisIntervalS: hunting.series.intervalS, tolerance: setup.tolerance }
-    explain.set('oscillationIndex', strongest.regularity, series.used, p, { decayRatio: strongest.decay, episodes: strongest.episodes.length })
-    explain.set('oscillationPeriod', strongest.periodS, series.used, p, { standardErrorS: strongest.periodSdS })
-    explain.set('oscillationAmplitude', strongest.amplitude, series.used, p, {})
-    explain.set('oscillationStrength', strongest.strength, series.used, p, {})
-    explain.set('oscillationShare', Math.min(1, huntingS / usableS), series.used, p, { huntingS, usableS })
-  }
-  else {
-    if (series && series.used >= 64) explain.set('oscillationShare', 0, series.used, { analysisIntervalS: series.intervalS, tolerance: setup.tolerance }, { huntingS: 0, usableS })
-    explain.withholdAll([...oscillating, 'oscillationShare'], series && series.used >= 64 ? 'No regular oscillation of meaningful size was found.' : 'Too few samples in a normal mode and away from the limits.')
-  }
+  const counted = oscillations.filter(o => o.amplitude >= meaningful).flatMap(o => o.episodes)
+  const ledger = buildLedger(prepared, setup.tolerance, week, counted, outages)
+  explainOscillation(explain, strongest, hunting?.series ?? null, setup.tolerance, counted, usableS, enough ? 'No regular oscillation was found.' : tooFew)
 
-  const shape = hunting && strongest ? shapeOf(hunting.series, strongest) : null
-  const features = gatherFeatures({ setup, prepared, series, ledger, oscillations, shape, error: series ? errorCharacter(series) : null, reading, standardDeviation: error.standardDeviation, valveTests: [] })
+  // the stretch on which shape and valve are judged: an episode inside one segment, else the longest segment
+  const home = hunting?.series ?? null
+  const stretch = home && (strongest ? longestEpisode(home, strongest) ?? longestSegment(home) : longestSegment(home))
+  const y = home && stretch ? home.error.slice(stretch.begin, stretch.end) : null
+  // minus the error is PV without what the set point does
+  if (y) for (let i = 0; i < y.length; i++) y[i] = -y[i]
+  const u = home?.op && stretch ? home.op.subarray(stretch.begin, stretch.end) : null
+  const period = strongest && home ? strongest.periodS / home.intervalS : null
+  const character = enough ? errorCharacter(series) : null
+  const tooSlow = swingTooFast(prepared, home, period)
+  const panelSilent = setup.form === 'onOff' ? 'The valve tests are not for on-off loops.' : compression ?? tooSlow
+  const processSign = setup.action === 'reverse' ? 1 : -1
+  const stick = y && u && character && !panelSilent ? stickFit(y, u, processSign, (3 * (strongest?.periodS ?? 2 * character.staySideS)) / home!.intervalS) : null
+  const panel = valvePanel(y, u, period, setup.type, opSpan, stick, panelSilent)
+  const shape = y && period !== null && period >= 4 && y.length >= 6 * period ? cycleShape(y, u, period) : null
+  const halves = enough && character && character.deviation > 0 ? halfCycles(series, 0.7 * character.deviation) : null
+  const upsets = enough ? recoveries(series, setup.settlingS, noise / Math.sqrt(series.factor), processSign, pvSpan) : null
+  const responses = explainResponses(explain, enough ? series : null, setup, activity.kind, noise, upsets)
+  const benchmarkByHorizon = explainBenchmark(explain, series, setup, compression)
+
+  const features = gatherFeatures({ setup, prepared, series, ledger, oscillations, shape, error: character, reading, stick, halves, panel, upsets })
   options.features?.(features)
-  const benchmarkByHorizon = benchmarkOf(explain, series, setup, compression)
-  const judged = judge({ setup, measures: explain.measures, ledger, oscillations, hasSetpoint: activity.kind !== 'absent' })
+  const judged = judge({ setup, prepared, ledger, features, oscillations, meaningful, compression, tooSlow, enough })
+  if (isInsufficient(panel.stiction)) explain.withholdAll(['apparentStiction', 'apparentStictionLow', 'apparentStictionHigh'], sentence(panel.stiction.reason))
+  else if (judged.valveLikely) {
+    const p = { opSpan, periodS: strongest?.periodS ?? null }
+    explain.set('apparentStiction', panel.stiction.percent, y!.length, p, { cycles: panel.stiction.cycles })
+    explain.set('apparentStictionLow', panel.stiction.low, y!.length, p, { cycles: panel.stiction.cycles })
+    explain.set('apparentStictionHigh', panel.stiction.high, y!.length, p, { cycles: panel.stiction.cycles })
+  }
+  else explain.withholdAll(['apparentStiction', 'apparentStictionLow', 'apparentStictionHigh'], 'There are no clear signs of sticking, and on a sound valve the width of the PV-OP loop says nothing.')
+  explainOnOff(explain, prepared, setup)
+
+  const { valveLikely: _, ...judgement } = judged
   return {
     week: week.id,
     methodVersion: METHOD_VERSION,
@@ -132,20 +119,22 @@ export function assessLoopWeek(record: LoopRecord, setup: LoopSetup, week: WeekF
     measures: explain.measures,
     withheld: explain.withheld,
     explanations: explain.explanations,
-    ...judged,
+    ...judgement,
     oscillations,
-    responses: [],
-    valveTests: [],
-    rhythm: series ? rhythmOf(series, setup.settlingS, strongest?.periodS) : null,
-    pvOp: null,
+    responses,
+    valveTests: panel.tests,
+    rhythm: home ? rhythmOf(home, setup.settlingS, strongest?.periodS) : null,
+    pvOp: home && stretch && (strongest || judged.valveLikely) ? pvOpOf(home, stretch.begin, stretch.end, strongest?.periodS ?? null) : null,
     benchmarkByHorizon,
     model: null,
   }
 }
 
-function countFlags(flags: Uint8Array, pv: Float64Array, op: Float64Array | null) {
+/** Coverage, service factor, limits, frozen and out-of-range shares, travel. @returns usable time, s */
+function explainTime(explain: Explainer, prepared: PreparedRecord, setup: LoopSetup, edges: Float64Array): number {
+  const { n, flags, intervalS, pv, op } = prepared
   const c = { received: 0, usable: 0, known: 0, offNormal: 0, low: 0, high: 0, op: 0, frozen: 0 }
-  for (let i = 0; i < flags.length; i++) {
+  for (let i = 0; i < n; i++) {
     const f = flags[i]
     if (f & RECEIVED) c.received++
     if (pv[i] === pv[i]) c.usable++
@@ -156,128 +145,112 @@ function countFlags(flags: Uint8Array, pv: Float64Array, op: Float64Array | null
     if (f & FROZEN) c.frozen++
     if (op && op[i] === op[i]) c.op++
   }
-  return c
+  const weekMs = edges[edges.length - 1] - edges[0]
+  const usableS = n > 0 && intervalS > 0 ? c.usable * intervalS : 0
+  const p = { nativeIntervalS: intervalS }
+  explain.set('coverage', Math.min(1, (usableS * 1000) / weekMs), c.usable, { ...p, weekHours: weekMs / 3_600_000 }, { usableSamples: c.usable, longGaps: prepared.longGaps, missingSlots: prepared.missingSlots })
+  explain.set('frozenFraction', c.frozen / c.received, c.received, { horizonS: setup.settlingS, opShare: 0.02 }, { frozenSamples: c.frozen })
+  explain.set('outOfRangeFraction', prepared.outOfRange / c.received, c.received, { pvLow: setup.pvLow, pvHigh: setup.pvHigh, marginFraction: 0.05 }, { samplesOutOfRange: prepared.outOfRange })
+  if (prepared.hasMode)
+    explain.set('serviceFactor', 1 - c.offNormal / c.known, c.known, { ...p, normalModes: setup.normalModes.join(' ') }, { knownSamples: c.known, normalSamples: c.known - c.offNormal })
+  else explain.withhold('serviceFactor', 'The record has no MODE, so the time in the normal mode is not known.')
+
+  const limits = ['saturationFraction', 'saturationLowFraction', 'saturationHighFraction'] as const
+  if (!op) {
+    explain.withholdAll([...limits, 'valveTravelPerDay', 'reversalsPerDay'], 'The record has no OP.')
+    return usableS
+  }
+  const opSpan = setup.opHigh - setup.opLow
+  if (setup.form === 'onOff') explain.withholdAll([...limits], 'An on-off output is always at one of its limits.')
+  else {
+    const l = { ...p, opLow: setup.opLow, opHigh: setup.opHigh, marginPercent: 0.5, leastSamples: 3 }
+    explain.set('saturationFraction', (c.low + c.high) / c.op, c.op, l, { samplesAtLimits: c.low + c.high })
+    explain.set('saturationLowFraction', c.low / c.op, c.op, l, { samplesAtLow: c.low })
+    explain.set('saturationHighFraction', c.high / c.op, c.op, l, { samplesAtHigh: c.high })
+  }
+  const m = valveMovement(op, prepared.stretches, intervalS, opSpan)
+  explain.set('valveTravelPerDay', m.travelPerDay, m.samples, { ...p, opSpan }, {})
+  explain.set('reversalsPerDay', m.reversalsPerDay, m.samples, { ...p, opSpan }, { noiseBand: m.noiseBand })
+  if (setup.form === 'onOff') explain.set('switchingsPerDay', m.switchingsPerDay, m.samples, { ...p, opSpan }, {})
+  return usableS
 }
 
-/** @returns why shape, benchmark and valve tests cannot be trusted on this record, or null */
-function compressionOf(explain: Explainer, pv: Float64Array, step: { step: number, factor: number }): string | null {
-  const piece = middleOf(pv)
-  if (step.step > 0) explain.set('quantisation', step.step, piece.length, {}, { stepOverDeviation: step.factor })
-  else explain.withhold('quantisation', 'No step can be seen: the values do not lie on a grid.')
-  const c = piece.length > 0 ? compressionFactor(piece, step.step) : null
-  if (!c || isInsufficient(c)) {
-    explain.withhold('compressionFactor', c ? sentence(c.reason) : 'No samples in this week.')
-    return null
-  }
-  explain.set('compressionFactor', c.factor, c.samples, { tolerance: c.tolerance, upperLimit: 3 }, { zeroSecondDifferences: c.zeroSecondDifferences, repeats: c.repeats, repeatFactor: c.repeatFactor })
-  if (c.factor > COMPRESSION_LIMIT) return `The historian has thinned the record (compression factor ${c.factor.toFixed(1)}, limit 3), so its shape cannot be trusted.`
-  // repeats come from coarse resolution too: only a fine step tells that a value was held
-  if (c.repeatFactor > COMPRESSION_LIMIT && step.step > 0 && step.factor < 0.1) return `Most samples repeat the one before (factor ${c.repeatFactor.toFixed(1)}, limit 3): the historian holds old values, so the shape cannot be trusted.`
-  return null
+function explainError(explain: Explainer, prepared: PreparedRecord, setup: LoopSetup): void {
+  const e = errorMeasures(prepared, setup.tolerance)
+  const pvSpan = setup.pvHigh - setup.pvLow
+  const p = { nativeIntervalS: prepared.intervalS }
+  const none = prepared.sp ? 'No sample has both SP and PV in a normal mode.' : 'The record has no SP, so there is no control error.'
+  explain.set('iaePerHour', e.meanAbsoluteError, e.errorSamples, p, {}, none)
+  explain.set('iaePercentSpan', (100 * e.meanAbsoluteError) / pvSpan, e.errorSamples, { ...p, pvSpan }, { iaePerHour: e.meanAbsoluteError }, none)
+  explain.set('offset', e.offset, e.errorSamples, p, {}, none)
+  explain.set('standardDeviation', e.standardDeviation, e.pvSamples, p, { meanPv: e.pvMean }, 'No sample of PV in a normal mode.')
+  explain.set('timeInTolerance', e.timeInTolerance, e.anySamples, { ...p, tolerance: setup.tolerance }, {}, none)
 }
 
-/** A reason from the numerics, as a sentence. */
-function sentence(reason: string): string {
-  return `${reason.charAt(0).toUpperCase()}${reason.slice(1)}${reason.endsWith('.') ? '' : '.'}`
+function explainOscillation(explain: Explainer, o: Oscillation | undefined, series: AnalysisSeries | null, tolerance: number, counted: TimeSpan[], usableS: number, none: string): void {
+  const keys = ['oscillationIndex', 'oscillationPeriod', 'oscillationAmplitude', 'oscillationStrength'] as const
+  if (!series) return explain.withholdAll([...keys, 'oscillationShare'], none)
+  const p = { analysisIntervalS: series.intervalS, tolerance }
+  const huntingS = mergeSpans(counted).reduce((sum, e) => sum + e.toMs - e.fromMs, 0) / 1000
+  explain.set('oscillationShare', Math.min(1, huntingS / usableS), series.used, p, { huntingS, usableS })
+  if (!o) return explain.withholdAll([...keys], none)
+  explain.set('oscillationIndex', o.regularity, series.used, p, { decayRatio: o.decay, episodes: o.episodes.length })
+  explain.set('oscillationPeriod', o.periodS, series.used, p, { standardErrorS: o.periodSdS })
+  explain.set('oscillationAmplitude', o.amplitude, series.used, p, {})
+  explain.set('oscillationStrength', o.strength, series.used, p, {})
 }
 
-/** Minimum-variance ratio on the segments of the analysis series. */
-function benchmarkOf(explain: Explainer, series: AnalysisSeries | null, setup: LoopSetup, refused: string | null): LoopWeekAssessment['benchmarkByHorizon'] {
-  const keys = ['varianceRatio', 'varianceRatioLow', 'varianceRatioHigh', 'headroom'] as const
-  const refuse = (reason: string) => {
-    explain.withholdAll([...keys], reason)
-    return null
-  }
-  if (refused) return refuse(refused)
-  if (!series) return refuse('No samples in this week.')
-  if (setup.form === 'onOff') return refuse('On-off control cannot be compared with minimum variance.')
-  let left = BENCHMARK_SAMPLES
-  const segments: Float64Array[] = []
-  for (const s of series.segments) {
-    const length = Math.min(left, s.end - s.begin)
-    if (length < 60) continue
-    segments.push(series.error.subarray(s.begin, s.begin + length))
-    left -= length
-  }
-  // without a dead time: the extended horizon, a sixth of the settling horizon (our default)
-  const horizonS = setup.deadTimeS ?? setup.settlingS / 6
-  const b = Math.min(60, delaySamples(horizonS, series.intervalS))
-  const v = varianceBenchmark(segments, { delaySamples: b, delaySource: setup.deadTimeS === null ? 'horizon' : 'known' })
-  if (isInsufficient(v)) return refuse(sentence(v.reason))
-  const parameters = { analysisIntervalS: series.intervalS, delaySamples: b, delaySource: v.delaySource, horizonS }
-  const intermediates = { minimumVariance: v.minimumVariance, variance: v.variance, asymptoticDeviation: v.standardDeviation, segments: v.segments.length, modelOrder: v.segments[0]?.order ?? null }
-  explain.set('varianceRatio', v.ratio, v.samples, parameters, intermediates)
-  explain.set('headroom', v.headroom, v.samples, parameters, intermediates)
-  if (v.low !== null && v.high !== null) {
-    explain.set('varianceRatioLow', v.low, v.samples, parameters, intermediates)
-    explain.set('varianceRatioHigh', v.high, v.samples, parameters, intermediates)
-  }
-  else explain.withholdAll(['varianceRatioLow', 'varianceRatioHigh'], sentence(v.intervalWithheld ?? 'No interval.'))
-  const curve = ratioByHorizon(segments, { longestSamples: Math.max(30, 2 * b) })
-  if (isInsufficient(curve)) return null
-  return {
-    horizonS: Array.from(curve.ratio, (_, i) => (i + 1) * series.intervalS),
-    ratio: Array.from(curve.ratio, r => Number(r.toFixed(4))),
-  }
+function explainOnOff(explain: Explainer, prepared: PreparedRecord, setup: LoopSetup): void {
+  const keys = ['onOffPeriodS', 'onOffSwing', 'onOffDuty'] as const
+  if (setup.form !== 'onOff') return explain.withholdAll([...keys, 'switchingsPerDay'], 'Only for on-off loops.')
+  if (!prepared.op) return explain.withholdAll([...keys, 'switchingsPerDay'], 'The record has no OP.')
+  const c = onOffCycle(prepared.op, prepared.pv, prepared.stretches, prepared.intervalS, (setup.opLow + setup.opHigh) / 2)
+  if (!c) return explain.withholdAll([...keys], 'Fewer than three whole switching cycles.')
+  const p = { nativeIntervalS: prepared.intervalS, hysteresis: setup.hysteresis }
+  explain.set('onOffPeriodS', c.periodS, c.cycles, p, { cycles: c.cycles })
+  explain.set('onOffSwing', c.swing, c.cycles, p, { cycles: c.cycles })
+  explain.set('onOffDuty', c.duty, c.cycles, p, { cycles: c.cycles })
 }
 
-/** A piece of at most QUALITY_SAMPLES from the middle: resolution and compression do not change within a week. */
-function middleOf(x: Float64Array): Float64Array {
-  const from = Math.max(0, (x.length - QUALITY_SAMPLES) >> 1)
-  return x.subarray(from, from + QUALITY_SAMPLES)
+interface Stretch { begin: number, end: number }
+
+function longestSegment(series: AnalysisSeries): Stretch | null {
+  return series.segments.reduce<Stretch | null>((a, b) => (a && a.end - a.begin >= b.end - b.begin ? a : b), null)
 }
 
-/** Cycle by cycle over the longest piece of an episode inside one segment. */
-function shapeOf(series: AnalysisSeries, o: Oscillation): CycleShape | null {
-  let begin = 0
-  let end = 0
+/** The longest piece of an episode inside one segment; null below six periods. */
+function longestEpisode(series: AnalysisSeries, o: Oscillation): Stretch | null {
+  let best: Stretch | null = null
   for (const [from, to] of spansOf(series, o)) {
     for (const s of series.segments) {
-      const a = Math.max(from, s.begin)
-      const b = Math.min(to, s.end)
-      if (b - a > end - begin) {
-        begin = a
-        end = b
-      }
+      const begin = Math.max(from, s.begin)
+      const end = Math.min(to, s.end)
+      if (!best || end - begin > best.end - best.begin) best = { begin, end }
     }
   }
-  const period = o.periodS / series.intervalS
-  if (end - begin < 6 * period) return null
-  // minus the error is PV without what the set point does
-  const y = series.error.slice(begin, end)
-  for (let i = 0; i < y.length; i++) y[i] = -y[i]
-  return cycleShape(y, series.op ? series.op.subarray(begin, end) : null, period)
+  return best && best.end - best.begin >= (6 * o.periodS) / series.intervalS ? best : null
 }
 
-/** Autocorrelation and spectrum of the longest segment, thinned for drawing. */
-function rhythmOf(series: AnalysisSeries, settlingS: number, periodS?: number): LoopWeekAssessment['rhythm'] {
-  const longest = series.segments.reduce<{ begin: number, end: number } | null>((a, b) => (a && a.end - a.begin >= b.end - b.begin ? a : b), null)
-  if (!longest || longest.end - longest.begin < 64) return null
-  const x = series.error.subarray(longest.begin, longest.end)
-  const { intervalS } = series
-  const maxLag = Math.max(20, Math.min(x.length >> 1, 4000, Math.ceil(Math.max(10 * settlingS, 8 * (periodS ?? 0)) / intervalS)))
-  const acf = autocorrelation(x, maxLag)
-  if (!(acf[0] === acf[0])) return null
-  const stride = Math.ceil((maxLag + 1) / 400)
-  const lagS: number[] = []
-  const correlation: number[] = []
-  for (let k = 0; k <= maxLag; k += stride) {
-    lagS.push(k * intervalS)
-    correlation.push(Number(acf[k].toFixed(4)))
+/** Why a cause cannot be read from the record's sampling, or null. */
+function swingTooFast(prepared: PreparedRecord, series: AnalysisSeries | null, period: number | null): string | null {
+  const say = (samples: number) => `The loop swings about every ${samples.toFixed(1)} samples; at least 8 samples a cycle are needed to see why. Record it at a shorter interval.`
+  if (!series) return null
+  if (period !== null) return period < 8 && series.factor === 1 ? say(period) : null
+  const piece = nativePiece(prepared)
+  const fast = piece ? fastSwing(piece) : null
+  return fast && fast.share > 0.4 ? say(fast.period) : null
+}
+
+/** The first piece of up to 4096 native samples in normal mode with nothing missing, 512 at least. */
+function nativePiece(prepared: PreparedRecord): Float64Array | null {
+  const x = prepared.error ?? prepared.pv
+  let run = 0
+  for (let i = 0; i <= prepared.n; i++) {
+    if (i < prepared.n && x[i] === x[i] && (prepared.flags[i] & (OFF_NORMAL | AT_LOW | AT_HIGH | FROZEN)) === 0 && run < 4096) run++
+    else {
+      if (run >= 512) return x.subarray(i - run, i)
+      run = 0
+    }
   }
-  const most = periodS ? 12 * Math.max(periodS, 4 * intervalS) / intervalS : 1024
-  let length = 64
-  while (length * 2 <= x.length && length < most && length < 8192) length *= 2
-  const spectrum = welchSpectrum(x, { sampleIntervalS: intervalS, segmentLength: length })
-  const bins = spectrum.power.length - 1
-  const group = Math.ceil(bins / 400)
-  const periods: number[] = []
-  const power: number[] = []
-  for (let k = 1; k <= bins; k += group) {
-    let best = k
-    for (let j = k; j < k + group && j <= bins; j++) if (spectrum.power[j] > spectrum.power[best]) best = j
-    periods.push(Number((1 / spectrum.frequencyHz[best]).toPrecision(5)))
-    power.push(Number(spectrum.power[best].toPrecision(4)))
-  }
-  return { lagS, autocorrelation: correlation, periodS: periods, power }
+  return null
 }

@@ -15,6 +15,8 @@ export interface ErrorCharacter {
   staySideS: number
   /** 1 - (lag-1 autocorrelation), at least 0: about 1 for white noise */
   whiteness: number
+  /** standard deviation of the error */
+  deviation: number
   /** kurtosis of the error: 3 normal, 1.5 sine, large when it is mostly quiet with rare upsets */
   kurtosis: number
 }
@@ -56,6 +58,7 @@ export function errorCharacter(series: AnalysisSeries): ErrorCharacter | null {
     decayS: (k - 1 + part) * series.intervalS,
     staySideS: (n / (changes + 1)) * series.intervalS,
     whiteness: Math.max(0, 1 - r[1]),
+    deviation: Math.sqrt(m2),
     kurtosis: m4 / (m2 * m2),
   }
 }

@@ -21,11 +21,18 @@ export interface Hunting {
 }
 
 const HIDDEN_VARIANCE = 0.15
+const SMALLEST_SHARE = 0.2
 /** Runs of alike half-cycles that are too few or too small a share come about by chance. */
 const LEAST_IN_RUNS = 24
 const LEAST_RUN_SHARE = 0.3
 
-export function findHunting(prepared: PreparedRecord, series: AnalysisSeries, setup: LoopSetup, minimumAmplitude: number, noise: number): Hunting {
+/**
+ * @param meaningful amplitude from which an oscillation costs hours, PV unit; smaller ones down to a fifth of it are
+ *   still found, since they may betray a fault, but do not count as hunting
+ * @param noise standard deviation of PV's noise, native samples
+ */
+export function findHunting(prepared: PreparedRecord, series: AnalysisSeries, setup: LoopSetup, meaningful: number, noise: number): Hunting {
+  const minimumAmplitude = SMALLEST_SHARE * meaningful
   const longestPeriodS = Math.max(14_400, 4 * setup.settlingS)
   const find = (s: AnalysisSeries, noiseLevel: number, longest: number) => {
     const found = detectOscillations(s.error, { sampleIntervalS: s.intervalS, minimumAmplitude, noiseLevel, longestPeriodS: longest })
@@ -43,13 +50,17 @@ export function findHunting(prepared: PreparedRecord, series: AnalysisSeries, se
     }
   }
   let irregular: HalfCycles | null = null
-  if (!oscillations.length && minimumAmplitude > 0) {
-    const h = halfCycles(series, Math.max(minimumAmplitude, 3 * noise / Math.sqrt(series.factor)))
+  if (!oscillations.length && meaningful > 0) {
+    const h = halfCycles(series, Math.max(meaningful, 3 * noise / Math.sqrt(series.factor)))
     if (h.inRuns >= LEAST_IN_RUNS && h.inRuns >= LEAST_RUN_SHARE * h.count && h.periodS >= 6 * series.intervalS && h.periodS <= longestPeriodS) {
       irregular = h
       oscillations = [asOscillation(h, series)]
     }
   }
+  // a cycle is read on at least 16 samples where the record has them
+  const strongest = oscillations[0]
+  if (strongest && home.factor > 1 && strongest.periodS < 16 * home.intervalS)
+    home = analysisSeries(prepared, setup.settlingS, { factor: Math.max(1, Math.floor(strongest.periodS / 16 / prepared.intervalS)) })
   return { oscillations, series: home, irregular }
 }
 

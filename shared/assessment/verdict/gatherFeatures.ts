@@ -1,21 +1,25 @@
 /**
  * The figures that the likelihood tables know, gathered from the parts of the assessment. NaN: not there.
  */
-import type { LoopSetup, Oscillation, ValveTest } from '../types'
+import type { LoopSetup, Oscillation } from '../types'
 import type { Ledger } from '../ledger/buildLedger'
 import { OFF_NORMAL, type PreparedRecord } from '../preparation/prepareRecord'
 import type { AnalysisSeries } from '../preparation/analysisSeries'
 import type { CycleShape } from './cycleShape'
 import type { ErrorCharacter } from './errorCharacter'
+import type { HalfCycles } from './halfCycles'
+import type { StickFit } from './stickFit'
+import type { Recoveries } from './recoveries'
+import type { ValvePanel } from './valvePanel'
 import type { ReadingCharacter } from './readingCharacter'
 
 export const FEATURES = [
-  'huntingShare', 'regularity', 'decay', 'strength', 'amplitudeOverTolerance',
-  'amplitudeVariation', 'periodVariation', 'phaseWander',
-  'pvThird', 'opThird', 'pvOdd', 'opOdd', 'pvEven', 'opEven', 'pvCoherence',
-  'periodOverIntegralTime', 'periodOverDeadTime', 'setpointSwing', 'manualSwing', 'secondOscillation',
-  'errorDecayOverSettling', 'staySideOverSettling', 'whiteness', 'kurtosis',
-  'deviationOverTolerance', 'noiseOverTolerance', 'noiseShare', 'burstRatio', 'wildShare', 'offTargetShare',
+  'huntingShare', 'regularity', 'strength', 'amplitudeOverTolerance',
+  'amplitudeVariation', 'periodVariation', 'phaseWander', 'pvThird', 'opThird', 'pvOdd', 'pvEven', 'pvCoherence',
+  'halfLengthVariation', 'halfPeakVariation', 'periodOverIntegralTime', 'periodOverDeadTime', 'setpointSwing', 'manualSwing',
+  'stickExplained', 'stickGain', 'stickRest', 'standingTravel', 'jumpShare', 'halfCycleShape', 'peakAsymmetry', 'stickSlip', 'lagAsymmetry',
+  'errorDecayOverSettling', 'staySideOverSettling', 'slowShare', 'recoveryOverSettling', 'swingBack', 'idleIndex',
+  'whiteness', 'kurtosis', 'deviationOverTolerance', 'noiseOverTolerance', 'noiseShare', 'burstRatio', 'wildShare', 'offTargetShare',
 ] as const
 export type FeatureName = typeof FEATURES[number]
 export type FeatureValues = Record<FeatureName, number>
@@ -29,8 +33,10 @@ export interface FeatureParts {
   shape: CycleShape | null
   error: ErrorCharacter | null
   reading: ReadingCharacter
-  standardDeviation: number
-  valveTests: ValveTest[]
+  panel: ValvePanel
+  upsets: Recoveries | null
+  stick: StickFit | null
+  halves: HalfCycles | null
 }
 
 export function gatherFeatures(parts: FeatureParts): FeatureValues {
@@ -45,10 +51,8 @@ export function gatherFeatures(parts: FeatureParts): FeatureValues {
     const time = o.episodes.reduce((s, e) => s + e.toMs - e.fromMs, 0) / 1000
     v.huntingShare = time / (series.used * series.intervalS)
     v.regularity = Math.log10(o.regularity)
-    v.decay = o.decay
     v.strength = o.strength
     v.amplitudeOverTolerance = o.amplitude / tolerance
-    v.secondOscillation = oscillations.length > 1 ? oscillations[1].strength / o.strength : 0
     v.periodOverIntegralTime = setup.integralTimeS ? Math.log(o.periodS / setup.integralTimeS) : NaN
     v.periodOverDeadTime = setup.deadTimeS ? Math.log(o.periodS / setup.deadTimeS) : NaN
     if (series.sp) v.setpointSwing = swingAt(series.sp, o.periodS / series.intervalS, spansOf(series, o)) / o.amplitude
@@ -64,9 +68,7 @@ export function gatherFeatures(parts: FeatureParts): FeatureValues {
     v.pvThird = shape.pvThird
     v.opThird = shape.opThird
     v.pvOdd = shape.pvOdd
-    v.opOdd = shape.opOdd
     v.pvEven = shape.pvEven
-    v.opEven = shape.opEven
     v.pvCoherence = shape.pvCoherence
   }
   if (error) {
@@ -75,7 +77,23 @@ export function gatherFeatures(parts: FeatureParts): FeatureValues {
     v.whiteness = error.whiteness
     v.kurtosis = error.kurtosis
   }
-  const sd = parts.standardDeviation
+  if (parts.stick) {
+    v.stickExplained = parts.stick.explained
+    v.stickGain = parts.stick.explained - parts.stick.linear
+    v.stickRest = parts.stick.restShare
+  }
+  Object.assign(v, parts.panel.values)
+  if (parts.upsets) {
+    v.slowShare = parts.upsets.slowShare
+    v.recoveryOverSettling = parts.upsets.recoveryOverSettling
+    v.swingBack = parts.upsets.swingBack
+    v.idleIndex = parts.upsets.idleIndex
+  }
+  if (parts.halves) {
+    v.halfLengthVariation = parts.halves.lengthVariation
+    v.halfPeakVariation = parts.halves.peakVariation
+  }
+  const sd = error ? error.deviation : NaN
   v.deviationOverTolerance = sd / tolerance
   v.noiseOverTolerance = reading.noise / tolerance
   v.noiseShare = sd > 0 ? Math.min(1, (reading.noise / sd) ** 2) : NaN

@@ -1,13 +1,33 @@
-import type { EvidenceItem, Finding, LoopSetup, Measures, Oscillation, Verdict } from '../types'
+/**
+ * The verdict: data first, then mode, then limits, then oscillation, then cause.
+ *
+ * What the ledger counts (sensor, manual, saturated) is a fact and needs no likelihood. The causes that have to be inferred get
+ * their probability from the likelihood table. Several findings may hold; the verdict is the one that costs most hours, and among
+ * inferred causes the most probable. Where the data cannot carry a cause the verdict is `cannotTell`, with the reason.
+ * Source: the order of judgement is ours.
+ */
+import type { EvidenceItem, Finding, LoopSetup, Oscillation, Verdict } from '../types'
 import type { Ledger } from '../ledger/buildLedger'
+import type { PreparedRecord } from '../preparation/prepareRecord'
+import { EVIDENCE_TEXTS } from './evidenceTexts'
+import type { FeatureValues } from './gatherFeatures'
+import { posteriorOf, type Posterior } from './likelihoods'
 import { NEXT_ACTIONS, type NextActions } from './nextActions'
 
 export interface Facts {
   setup: LoopSetup
-  measures: Measures
+  prepared: PreparedRecord
   ledger: Ledger
+  features: FeatureValues
   oscillations: Oscillation[]
-  hasSetpoint: boolean
+  /** amplitude from which an oscillation counts as hunting */
+  meaningful: number
+  /** why the shape of the record cannot be trusted, or null */
+  compression: string | null
+  /** why the sampling cannot show a cause, or null */
+  tooSlow: string | null
+  /** enough samples in normal mode to look for patterns */
+  enough: boolean
 }
 
 export interface Judgement {
@@ -17,21 +37,177 @@ export interface Judgement {
   findings: Finding[]
   evidence: EvidenceItem[]
   nextActions: NextActions
+  /** the inference leans towards a sticking valve, whatever the verdict */
+  valveLikely: boolean
 }
 
-/** Data first, then mode, then limits, then oscillation, then cause. */
-export function judge({ ledger }: Facts): Judgement {
-  const { hours } = ledger
-  const findings: Finding[] = []
-  const add = (verdict: Verdict, h: number, confidence: number, text: string) => {
-    if (h > 0) findings.push({ verdict, confidence, hours: h, evidence: [{ measure: `hours ${verdict}`, value: h, threshold: null, says: 'for', weight: 2, source: 'Week ledger', text }] })
-  }
-  add('sensor', hours.sensor, 0.9, `PV was frozen, bad or out of range for ${hours.sensor} h.`)
-  add('manual', hours.manual, 0.95, `Outside its normal modes for ${hours.manual} h.`)
-  add('saturated', hours.saturated, 0.95, `The output stood at a limit for ${hours.saturated} h.`)
-  add('cannotTell', hours.hunting, 0.5, `The loop hunted for ${hours.hunting} h.`)
-  findings.sort((a, b) => b.hours - a.hours)
-  const top = findings[0]
-  const verdict = top?.verdict ?? (hours.steady > 0 ? 'steady' : 'cannotTell')
-  return { verdict, confidence: top?.confidence ?? 0.9, verdictReason: top?.evidence[0].text ?? '', findings, evidence: top?.evidence ?? [], nextActions: NEXT_ACTIONS[verdict] }
+/** Confidence in what the ledger counts hour by hour: wrong only if mode, limits or range are set up wrongly (ours). */
+const COUNTED = 0.97
+/** Below this an inferred cause is not named. */
+const LEAST_CONFIDENCE = 0.55
+/** An accusation of a fault without lost hours, and of a valve at all, needs more. */
+const LEAST_WITHOUT_LOSS = 0.7
+const LEAST_VALVE = 0.65
+
+const HUNTING: Verdict[] = ['huntingTuning', 'huntingValve', 'huntingExternal']
+
+const STATEMENTS: Readonly<Record<Verdict, string>> = {
+  steady: 'The loop does its work.',
+  huntingTuning: 'The loop hunts, most likely because it is tuned too tight.',
+  huntingValve: 'The loop hunts, most likely because its valve sticks.',
+  huntingExternal: 'The loop hunts, most likely with a rhythm carried in from elsewhere.',
+  sluggish: 'The loop works off upsets too slowly.',
+  saturated: 'The output stands at a limit.',
+  manual: 'The loop is left outside its normal modes.',
+  sensor: 'The reading is doubtful.',
+  noise: 'Noise dominates the error.',
+  cannotTell: 'The cause cannot be told.',
 }
+
+export function judge(facts: Facts): Judgement {
+  const { setup, ledger, features, oscillations, compression, tooSlow, enough, prepared } = facts
+  const { hours } = ledger
+  const inRecord = ledger.states.length - hours.noData - hours.down
+  if (prepared.n === 0 || inRecord === 0) {
+    return cannotTell(prepared.n === 0 ? 'There is no sample in this week.' : hours.down > 0 ? 'The loop was down, or its data are missing, all week.' : 'No hour is at least half covered by data.', [], false)
+  }
+  const counted: Finding[] = [
+    countedFinding('sensor', hours.sensor, inRecord, `PV was frozen, bad or out of range for ${h(hours.sensor)}.`),
+    countedFinding('manual', hours.manual, inRecord, `The loop was outside its normal modes for ${h(hours.manual)}.`),
+    countedFinding('saturated', hours.saturated, inRecord, `The output stood at a limit for ${h(hours.saturated)}.`),
+  ].filter(f => f.hours > 0).sort((a, b) => b.hours - a.hours)
+  // an hour or two of manual in a week is daily work, not a verdict
+  const worst = counted.find(f => f.hours >= Math.max(Math.min(2, inRecord), 0.04 * inRecord))
+
+  const posterior = posteriorOf(features)
+  const inferred = inferredFinding(facts, posterior)
+  const valveLikely = posterior.probability[posterior.classes.indexOf('huntingValve')] >= 0.5 && !compression && !tooSlow
+  const findings = [...counted]
+
+  let soft: Judgement | null = null
+  if (!enough) {
+    if (!worst) return cannotTell('Too few samples in a normal mode and away from the limits to look for a pattern.', findings, false)
+  }
+  else if (compression) soft = cannotTell(compression, findings, false)
+  else if (tooSlow) soft = cannotTell(tooSlow, findings, false)
+  else if (setup.form === 'onOff') soft = onOff(facts)
+  else soft = inferred
+
+  if (soft) {
+    const softHours = soft.findings[0]?.hours ?? 0
+    if (worst && worst.hours >= Math.max(softHours, 1)) {
+      findings.push(...soft.findings.filter(f => f.hours > 0 || (f.verdict !== 'steady' && f.confidence >= LEAST_WITHOUT_LOSS)))
+    }
+    else {
+      const all = [...soft.findings, ...counted].sort((a, b) => b.hours - a.hours)
+      const first = all.findIndex(f => f.verdict === soft!.verdict)
+      if (first > 0) all.unshift(...all.splice(first, 1))
+      return { ...soft, findings: all, valveLikely }
+    }
+  }
+  if (!worst) return cannotTell('The data do not allow more.', findings, false)
+  findings.sort((a, b) => b.hours - a.hours)
+  const others = oscillations.length > 0 && hours.hunting > 0 ? ` It also hunted for ${h(hours.hunting)}.` : ''
+  return {
+    verdict: worst.verdict, confidence: worst.confidence, verdictReason: `${worst.evidence[0].text}${others}`,
+    findings, evidence: worst.evidence, nextActions: NEXT_ACTIONS[worst.verdict], valveLikely,
+  }
+}
+
+const h = (hours: number): string => `${hours} h`
+
+function countedFinding(verdict: Verdict, hours: number, inRecord: number, text: string): Finding {
+  const share = hours / inRecord
+  return {
+    verdict, hours, confidence: COUNTED,
+    evidence: [{ measure: 'Hours in the week ledger', value: hours, threshold: null, says: 'for', weight: Number(Math.log((0.03 + share) / 0.03).toFixed(2)), source: 'Week ledger', text }],
+  }
+}
+
+/** What the likelihood table says, turned into a verdict or into the reason why there is none. */
+function inferredFinding(facts: Facts, posterior: Posterior): Judgement {
+  const { ledger, oscillations, meaningful, prepared, features } = facts
+  const { hours } = ledger
+  const { classes, probability } = posterior
+  const order = classes.map((_, c) => c).sort((a, b) => probability[b] - probability[a])
+  const hoursOf = (v: Verdict) => (HUNTING.includes(v) ? hours.hunting : v === 'steady' ? 0 : hours.offTarget)
+  const finding = (c: number): Finding => ({ verdict: classes[c], confidence: round(probability[c]), hours: hoursOf(classes[c]), evidence: evidenceOf(facts, posterior, c) })
+  const top = order[0]
+  const verdict = classes[top]
+  const p = probability[top]
+  const others = order.slice(1).filter(c => probability[c] >= 0.25).map(finding)
+  const hunts = oscillations.some(o => o.amplitude >= meaningful)
+
+  const undecided = (reason: string): Judgement => ({
+    ...cannotTell(reason, [{ verdict: 'cannotTell', confidence: round(1 - p), hours: hours.hunting + hours.offTarget, evidence: [], reason }, finding(top), ...others], false),
+    evidence: evidenceOf(facts, posterior, top),
+  })
+  if (!prepared.op && HUNTING.includes(verdict)) return undecided('The loop hunts. Without OP in the record the cause cannot be told.')
+  if (p < LEAST_CONFIDENCE) return undecided(`The evidence points two ways: ${NAMES[verdict]} (${percent(p)}) or ${NAMES[classes[order[1]]]} (${percent(probability[order[1]])}).`)
+  if (verdict === 'huntingValve' && p < LEAST_VALVE) return undecided(`A sticking valve is possible (${percent(p)}), but not sure enough to name it.`)
+  if (HUNTING.includes(verdict) && !hunts && p < LEAST_WITHOUT_LOSS) return undecided('There is a small swing whose cause is not clear.')
+  if (verdict === 'steady' && hours.hunting > 0.1 * (hours.hunting + hours.offTarget + hours.steady)) return undecided(`The loop hunted for ${h(hours.hunting)}, but the pattern fits no cause well.`)
+  if (verdict === 'steady' && features.offTargetShare > 0.2) return undecided(`The loop was off target for ${h(hours.offTarget)}, without a pattern that names a cause.`)
+  const own = finding(top)
+  const extra = own.hours > 0 ? ` It cost ${h(own.hours)}.` : verdict === 'steady' ? '' : ' It cost no hour so far.'
+  return {
+    verdict, confidence: own.confidence, verdictReason: STATEMENTS[verdict] + extra, findings: [own, ...others],
+    evidence: own.evidence, nextActions: NEXT_ACTIONS[verdict], valveLikely: false,
+  }
+}
+
+const NAMES: Readonly<Record<Verdict, string>> = {
+  steady: 'no trouble', huntingTuning: 'tight tuning', huntingValve: 'a sticking valve', huntingExternal: 'a rhythm carried in', sluggish: 'sluggish tuning',
+  saturated: 'a limit', manual: 'manual', sensor: 'a doubtful sensor', noise: 'noise', cannotTell: 'nothing',
+}
+
+/**
+ * Evidence for one cause against the others: each figure's weight for the cause less its mean weight for the others, by their
+ * probability. That is the natural logarithm of the likelihood ratio which the figure adds.
+ */
+function evidenceOf(facts: Facts, posterior: Posterior, c: number): EvidenceItem[] {
+  const rest = 1 - posterior.probability[c]
+  const items: EvidenceItem[] = []
+  for (const f of posterior.contributions) {
+    const x = facts.features[f.name]
+    if (x !== x) continue
+    let other = 0
+    f.perClass.forEach((w, k) => { if (k !== c) other += (posterior.probability[k] / rest) * w })
+    const weight = f.perClass[c] - other
+    const told = EVIDENCE_TEXTS[f.name]
+    const edge = f.bin < f.edges.length ? f.edges[f.bin] : f.edges[f.edges.length - 1]
+    items.push({
+      measure: told.measure, value: Number(x.toPrecision(4)), threshold: edge === undefined ? null : Number(edge.toPrecision(4)),
+      says: weight > 0.1 ? 'for' : weight < -0.1 ? 'against' : 'silent', weight: Number(weight.toFixed(2)), source: told.source, text: told.text(x),
+    })
+  }
+  return items.sort((a, b) => Math.abs(b.weight) - Math.abs(a.weight)).slice(0, 12)
+}
+
+/** An on-off loop swings by its nature: only the size of the swing is judged. */
+function onOff({ ledger, oscillations, setup }: Facts): Judgement {
+  const { hours } = ledger
+  const swing = oscillations[0]?.amplitude ?? 0
+  const item = (text: string, weight: number): EvidenceItem => ({ measure: 'Swing of the on-off cycle', value: Number(swing.toPrecision(4)), threshold: setup.tolerance, says: 'for', weight, source: 'Common practice, no source', text })
+  const judged = hours.hunting + hours.offTarget + hours.steady
+  if (hours.hunting + hours.offTarget > 0.1 * judged) {
+    const lost = hours.hunting + hours.offTarget
+    const evidence = [item(`The on-off cycle left the tolerance in ${h(lost)}.`, 2)]
+    return {
+      verdict: 'huntingTuning', confidence: 0.8, verdictReason: `The on-off cycle is wider than the tolerance. It cost ${h(lost)}.`,
+      findings: [{ verdict: 'huntingTuning', confidence: 0.8, hours: lost, evidence }], evidence,
+      nextActions: { ...NEXT_ACTIONS.huntingTuning, engineer: 'Check hysteresis and dead time; a narrower band or time-proportioned PID may hold the tolerance. Change it under management of change.' },
+      valveLikely: false,
+    }
+  }
+  const evidence = [item('The on-off cycle stays within the tolerance.', 2)]
+  return { verdict: 'steady', confidence: 0.9, verdictReason: 'The on-off cycle stays within the tolerance.', findings: [{ verdict: 'steady', confidence: 0.9, hours: 0, evidence }], evidence, nextActions: NEXT_ACTIONS.steady, valveLikely: false }
+}
+
+function cannotTell(reason: string, findings: Finding[], valveLikely: boolean): Judgement {
+  const own: Finding[] = findings.some(f => f.verdict === 'cannotTell') ? findings : [{ verdict: 'cannotTell', confidence: 0.9, hours: 0, evidence: [], reason }, ...findings]
+  return { verdict: 'cannotTell', confidence: own.find(f => f.verdict === 'cannotTell')!.confidence, verdictReason: reason, findings: own, evidence: [], nextActions: NEXT_ACTIONS.cannotTell, valveLikely }
+}
+
+const round = (p: number): number => Number(p.toFixed(3))
+const percent = (p: number): string => `${Math.round(100 * p)} %`

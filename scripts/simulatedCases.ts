@@ -1,0 +1,97 @@
+/**
+ * Runs simulated loops through the assessment in two processes and gives back what calibration and accuracy need. A case is a cause, a
+ * loop type and a seed; the same case gives the same loop. Used by calibrate.ts and accuracy.ts; not a command of its own.
+ */
+import { fork } from 'node:child_process'
+import { fileURLToPath } from 'node:url'
+import { assessLoopWeek } from '../shared/assessment/assessLoopWeek'
+import { drawScenario } from '../shared/assessment/simulation/drawScenario'
+import { simulateLoop } from '../shared/assessment/simulation/simulateLoop'
+import type { Cause } from '../shared/assessment/simulation/scenario'
+import type { LedgerState, LoopType, Verdict } from '../shared/assessment/types'
+import { weekFrame } from '../shared/assessment/week/isoWeek'
+
+export const LOOP_TYPES: LoopType[] = ['flow', 'pressure', 'level', 'temperature', 'analysis', 'other']
+
+export interface Case { cause: Cause, type: LoopType, seed: number }
+export interface CaseResult extends Case {
+  truth: Verdict
+  /** cause beneath a record that is too slow or compressed */
+  hidden: string | null
+  verdict: Verdict
+  confidence: number
+  reason: string
+  findings: { verdict: Verdict, confidence: number, hours: number }[]
+  hours: Record<LedgerState, number>
+  features: Record<string, number>
+  /** set-up details left out, as on a site where the tuning was never written down */
+  withoutTuning: boolean
+}
+
+/** Quick loops show in two days what slow ones show in a week. */
+const DAYS: Record<LoopType, number> = { flow: 1, pressure: 2, other: 2, level: 7, temperature: 7, analysis: 7 }
+const WEEK = weekFrame('2026-W48', 'UTC')
+
+/** null: the draw did not come out visible, which the simulator says. */
+export function runCase({ cause, type, seed }: Case): CaseResult | null {
+  let drawn
+  try {
+    drawn = drawScenario(cause, type, seed, { days: DAYS[type], startMs: WEEK.hourEdges[0] })
+  }
+  catch (error) {
+    if (error instanceof RangeError && /came out visible/.test(error.message)) return null
+    throw error
+  }
+  const { record } = simulateLoop(drawn.setup, drawn.scenario)
+  // one site in three has no tuning on record
+  const withoutTuning = seed % 3 === 0
+  const setup = withoutTuning ? { ...drawn.setup, gain: null, integralTimeS: null, derivativeTimeS: null, filterTimeS: null } : drawn.setup
+  let features: Record<string, number> = {}
+  const a = assessLoopWeek(record, setup, WEEK, [], { features: (v) => { features = v } })
+  return {
+    cause, type, seed, truth: drawn.truth.verdict, hidden: drawn.truth.facts.hidden === undefined ? null : String(drawn.truth.facts.hidden),
+    verdict: a.verdict, confidence: a.confidence, reason: a.verdictReason, findings: a.findings.map(f => ({ verdict: f.verdict, confidence: f.confidence, hours: f.hours })),
+    hours: a.hours, features, withoutTuning,
+  }
+}
+
+/** All cases over `workers` processes, in the order given; cases that did not come out are left out. */
+export async function runCases(cases: Case[], workers = 2, log: (done: number) => void = () => {}): Promise<CaseResult[]> {
+  const results = new Array<CaseResult | null>(cases.length).fill(null)
+  let next = 0
+  let done = 0
+  await Promise.all(Array.from({ length: workers }, () => new Promise<void>((resolve, reject) => {
+    const child = fork(fileURLToPath(import.meta.url), ['--cases'], { execArgv: ['--import', 'tsx'], serialization: 'advanced' })
+    const give = () => {
+      if (next >= cases.length) {
+        child.send({ from: 0, cases: [] })
+        return
+      }
+      const from = next
+      next = Math.min(cases.length, next + 8)
+      child.send({ from, cases: cases.slice(from, next) })
+    }
+    child.on('message', (message: { from: number, results: (CaseResult | null)[], error?: string }) => {
+      if (message.error) return reject(new Error(message.error))
+      message.results.forEach((r, i) => { results[message.from + i] = r })
+      done += message.results.length
+      log(done)
+      give()
+    })
+    child.on('exit', code => (code === 0 ? resolve() : reject(new Error(`worker ended with code ${code}`))))
+    give()
+  })))
+  return results.filter((r): r is CaseResult => r !== null)
+}
+
+if (process.argv[2] === '--cases' && process.send) {
+  process.on('message', (message: { from: number, cases: Case[] }) => {
+    if (!message.cases.length) process.exit(0)
+    try {
+      process.send!({ from: message.from, results: message.cases.map(runCase) })
+    }
+    catch (error) {
+      process.send!({ from: message.from, results: [], error: String((error as Error).stack) })
+    }
+  })
+}
