@@ -19,6 +19,18 @@ export interface DrawnLoop {
   decimals: { pv: number, sp: number, op: number }
 }
 
+/** What is given instead of drawn. */
+export interface GivenRange {
+  low: number
+  high: number
+  unit: string
+  /** PV at the working point */
+  at: number
+  /** true: output rises with the PV */
+  direct?: boolean
+  tolerance?: number
+}
+
 interface Kind {
   /** largest controller gain that people use: noise would wear the valve */
   mostGain: number
@@ -52,29 +64,35 @@ const KINDS: Record<LoopType, Kind> = {
  * @param random source of the draw
  * @param intervalS sampling interval, s; undefined: one usual for the type
  * @param slower factor on all times of the process, > 0
+ * @param range undefined: drawn
  * Source: ranges are common practice, no source; rule: S. Skogestad (2003), J. Process Control 13:291-309, with its half
  * rule for second lag, filter and hold.
  */
-export function drawLoop(type: LoopType, random: Pick<SeededRandom, 'uniform' | 'integer'>, intervalS: number | undefined, slower: number): DrawnLoop {
+export function drawLoop(type: LoopType, random: Pick<SeededRandom, 'uniform' | 'integer'>, intervalS: number | undefined, slower: number, range?: GivenRange): DrawnLoop {
   const kind = KINDS[type]
   const between = ([a, b]: [number, number]) => a * (b / a) ** random.uniform()
   const linearBetween = ([a, b]: [number, number]) => a + (b - a) * random.uniform()
   const pick = <T>(list: T[]): T => list[random.integer(list.length)]
-  const span = pick(kind.span)
-  const unit = pick(kind.unit)
+  const drawnSpan = pick(kind.span)
+  const drawnUnit = pick(kind.unit)
+  const low = range?.low ?? 0
+  const span = range ? range.high - range.low : drawnSpan
+  const unit = range?.unit ?? drawnUnit
   const interval = intervalS ?? pick(kind.intervalS)
   const timeConstant = slower * between(kind.tauS)
   const deadTime = slower * between(kind.deadS)
   const gain = between(kind.gain)
-  const direct = random.uniform() < 0.3
+  const drawnDirect = random.uniform() < 0.3
+  const direct = range ? range.direct ?? false : drawnDirect
   const second = random.uniform()
   const shape = random.uniform()
-  const furnaceLike = type === 'temperature' && !direct && shape > 0.72
+  const furnaceLike = type === 'temperature' && !direct && (range?.at ?? 100) > 60 && (shape > 0.72 || (range?.at ?? 0) > 500)
   const lag2 = second < 0.45 ? 0 : timeConstant * (0.08 + 0.3 * random.uniform())
   const filterTimeS = random.uniform() < 0.5 ? 0 : linearBetween(kind.filterS) * slower
   const signed = (direct ? -gain : gain) * span / 100
   const op = 35 + 28 * random.uniform()
-  const pv = span * (0.4 + 0.25 * random.uniform())
+  const share = 0.4 + 0.25 * random.uniform()
+  const pv = range?.at ?? span * share
 
   let linear: ProcessModel
   let process: SimulatedProcess
@@ -117,14 +135,14 @@ export function drawLoop(type: LoopType, random: Pick<SeededRandom, 'uniform' | 
   }
   const tidy = (x: number) => Number(x.toPrecision(3))
   const setup: LoopSetup = {
-    tag: `${kind.prefix}-${100 + random.integer(900)}`, type, pvLow: 0, pvHigh: span, pvUnit: unit, opLow: 0, opHigh: 100,
-    normalModes: ['AUTO', 'CAS'], tolerance: tidy(kind.tolerance * span), priority: (1 + random.integer(3)) as 1 | 2 | 3,
+    tag: `${kind.prefix}-${100 + random.integer(900)}`, type, pvLow: low, pvHigh: low + span, pvUnit: unit, opLow: 0, opHigh: 100,
+    normalModes: ['AUTO', 'CAS'], tolerance: range?.tolerance ?? tidy(kind.tolerance * span), priority: (1 + random.integer(3)) as 1 | 2 | 3,
     deadTimeS: random.uniform() < 0.6 ? tidy(deadTime) : null, settlingS: kind.settlingS,
     form: wantsDerivative ? 'series' : 'ideal', action: direct ? 'direct' : 'reverse',
     gain: tidy(controllerGain), integralTimeS: tidy(integralTime), derivativeTimeS: wantsDerivative ? tidy(two) : null,
     filterTimeS: filterTimeS > 0 ? tidy(filterTimeS) : null, setpointWeight: random.uniform() < 0.3 ? 0.5 : null, hysteresis: null, upstream: [],
   }
-  const decimals = span >= 400 ? 1 : span >= 20 ? 2 : 3
+  const decimals = span >= 400 ? 1 : span >= 20 ? 2 : span >= 1 ? 3 : 4
   return {
     setup, process, linear, workingPoint: { pv, op }, stepS, intervalS: interval,
     noise: span * between(kind.noise), closedLoopS, decimals: { pv: decimals, sp: decimals, op: 2 },

@@ -1,7 +1,7 @@
 import type { LoopSetup, LoopType } from '../types'
 import { seededRandom, type SeededRandom } from '../statistics/seededRandom'
 import { compressTrend } from './compressTrend'
-import { drawLoop, type DrawnLoop } from './drawLoop'
+import { drawLoop, type DrawnLoop, type GivenRange } from './drawLoop'
 import { gainMargin } from './gainMargin'
 import { idealTuning } from './idealTuning'
 import { mixSeed } from './mixSeed'
@@ -17,6 +17,10 @@ export interface DrawOptions {
   partial?: boolean
   /** for `carriedIn`: the period that arrives; undefined: drawn */
   periodS?: number
+  /** a range and working point that are given, not drawn */
+  range?: GivenRange
+  /** factor on the process times; 1 when left out */
+  slower?: number
 }
 
 interface Draft {
@@ -45,13 +49,13 @@ const DAY = 86_400
  * Source: common practice, no source; tuning by S. Skogestad (2003).
  */
 export function drawScenario(cause: Cause, type: LoopType, seed: number, options: DrawOptions): { setup: LoopSetup, scenario: LoopScenario, truth: LoopTruth } {
-  let slower = 1
+  let slower = options.slower ?? 1
   const stream = mixSeed(seed, 10 * CAUSES.indexOf(cause) + TYPES.indexOf(type))
   for (let attempt = 0; attempt < 120; attempt++) {
     try {
       const random = seededRandom(mixSeed(stream, attempt))
       const intervalS = cause === 'tooSlow' ? undefined : options.intervalS
-      const loop = drawLoop(type, random, intervalS, slower)
+      const loop = drawLoop(type, random, intervalS, slower, options.range)
       const draft: Draft = { random, loop, days: options.days, scenario: calmScenario(random, loop, options, stream) }
       build(cause, draft, options)
       const { scenario } = draft
@@ -253,7 +257,7 @@ function ordinaryEvents(draft: Draft): void {
   const { tolerance, type } = loop.setup
   const perStep = Math.max(1e-9, peakOf(draft))
   const steps = Math.round(days * 4 * random.uniform())
-  scenario.loads.push(randomSteps(random, scenario.durationS, steps, () => Math.min(15, tolerance * (0.5 + 1.5 * random.uniform()) / perStep), loop.closedLoopS))
+  scenario.loads.push(randomSteps(random, scenario.durationS, steps, () => Math.min(12, tolerance * (0.5 + 1.5 * random.uniform()) / perStep), loop.closedLoopS))
   const kind = random.uniform()
   if (type !== 'level' && kind < 0.2 && loop.closedLoopS < 120) {
     scenario.cascade = true
@@ -291,16 +295,20 @@ function movingSetpoint(draft: Draft, perDay: number, low: number, high: number)
   const { random, loop, days } = draft
   const base = loop.workingPoint.pv
   const count = Math.max(2, Math.round(days * perDay * (0.4 + random.uniform())))
+  const span = loop.setup.pvHigh - loop.setup.pvLow
+  const grain = 10 ** Math.floor(Math.log10(span / 200))
+  const tidy = (x: number) => Number((Math.round(x / grain) * grain).toPrecision(6))
   const points = []
   let away = 0
   const at = Array.from({ length: count }, () => draft.scenario.durationS * random.uniform()).sort((a, b) => a - b)
-  const most = 12 * (loop.setup.pvHigh - loop.setup.pvLow) / 100 * 1.2
+  // far enough from the limits of the output
+  const most = loop.linear.kind === 'integrating' ? 0.14 * span : Math.min(0.14 * span, 12 * Math.abs(loop.linear.processGain))
   for (const time of at) {
-    const wish = loop.setup.tolerance * (low + (high - low) * random.uniform()) * (random.uniform() < 0.5 ? -1 : 1)
+    const wish = Math.min(most, loop.setup.tolerance * (low + (high - low) * random.uniform())) * (random.uniform() < 0.5 ? -1 : 1)
     away = Math.abs(away + wish) > most || Math.abs(away + wish) > Math.abs(wish) * 2 ? away - wish : away + wish
-    points.push({ at: Math.round(time), value: Number((base + away).toPrecision(3)), ramp: false })
+    points.push({ at: Math.round(time), value: tidy(base + away), ramp: false })
   }
-  return { kind: 'points', start: Number(base.toPrecision(3)), points }
+  return { kind: 'points', start: tidy(base), points }
 }
 
 /** The set point of a cascade's inner loop: slow against the loop itself. */

@@ -1,9 +1,9 @@
 import type { LoopType } from '../types'
 import { seededRandom } from '../statistics/seededRandom'
 import { drawScenario } from './drawScenario'
+import { errorDeviation } from './errorDeviation'
 import { mixSeed } from './mixSeed'
 import { CAUSES, type Cause } from './scenario'
-import { simulateLoop } from './simulateLoop'
 import type { PlantLoop } from './simulatePlant'
 
 export interface PlantWishes {
@@ -66,7 +66,7 @@ export function planPlant({ loops, days, intervalS, seed, startMs, mix }: PlantW
       outer.scenario.stepS = intervalS
       inner.primary = index
       inner.scenario.cascade = true
-      inner.scenario.workingPoint = { ...inner.scenario.workingPoint, pv: inner.setup.pvHigh * outer.scenario.workingPoint.op / 100 }
+      inner.scenario.workingPoint = { ...inner.scenario.workingPoint, pv: inner.setup.pvLow + (inner.setup.pvHigh - inner.setup.pvLow) * outer.scenario.workingPoint.op / 100 }
       inner.setup.normalModes = ['CAS']
       continue
     }
@@ -92,10 +92,7 @@ export function planPlant({ loops, days, intervalS, seed, startMs, mix }: PlantW
     }
     const loop = add(drawWhatShows(cause, type))
     if (loop.scenario.truth.cause === 'stickingValve') {
-      const { record } = simulateLoop(loop.setup, { ...loop.scenario, durationS: Math.min(loop.scenario.durationS, 86_400) })
-      const mean = record.pv.reduce((a, b) => a + b, 0) / record.pv.length
-      const deviation = Math.sqrt(record.pv.reduce((a, b) => a + (b - mean) ** 2, 0) / record.pv.length)
-      source = { index, deviation: deviation * 100 / (loop.setup.pvHigh - loop.setup.pvLow), periodS: Number(loop.scenario.truth.facts.periodS), reached: 0 }
+      source = { index, deviation: errorDeviation(loop.setup, loop.scenario), periodS: Number(loop.scenario.truth.facts.periodS), reached: 0 }
     }
   }
   if (mix === 'plant' && days >= 2) {
