@@ -36,4 +36,3 @@ export async function readLoop(db: Database, tag: string, asked: string | undefi
     setAsides, shelving, concerns, dataFrom: span?.first ?? null, dataTo: span?.last ?? null,
   }
 }
-export type LoopPage = Awaited<ReturnType<typeof readLoop>>
