@@ -80,7 +80,7 @@ export async function listLoopWeeks(db: Database, q: FleetQuery & { week: string
       (select coalesce(json_agg(page), '[]') from (
         select ${keys}, case when w.verdict = 'cannotTell' then w.detail->>'verdictReason' end as reason
         ${joins} where ${where} order by ${order(q)} offset :offset ${q.limit === undefined ? '' : 'limit :limit'}) page) as rows,
-      (select json_build_object('loops', count(*), 'lostHours', coalesce(sum(w.lost_hours), 0), 'lostHoursBefore', sum(before.lost_hours),
+      (select json_build_object('loops', count(*), 'lostHours', coalesce(sum(w.lost_hours), 0), 'change', sum(w.lost_hours - before.lost_hours),
         'overTwenty', count(*) filter (where w.lost_hours > 20), 'setAside', count(s.until_at), 'hours', json_build_object(${hours}))
         ${joins} where ${where}) as summary`, bindings)
   return { rows: answer.rows.map(toRow), summary: answer.summary }

@@ -46,8 +46,8 @@ export interface LoopRow extends Record<FleetMeasure, number | null> {
 export interface FleetSummary {
   loops: number
   lostHours: number
-  /** of the same loops in the week before; null when none of them was assessed then */
-  lostHoursBefore: number | null
+  /** lost hours against the week before, over the loops assessed in both; null when none was */
+  change: number | null
   hours: Record<LedgerState, number>
   /** loops that lost more than 20 hours */
   overTwenty: number

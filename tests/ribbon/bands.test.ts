@@ -1,6 +1,7 @@
 import { describe, expect, it } from 'vitest'
 import { bandOrder } from '../../shared/ribbon/bandOrder'
 import { commonUpsets } from '../../shared/ribbon/commonUpsets'
+import { lostBetween } from '../../shared/ribbon/lostBetween'
 
 const strip = (from: number, to: number, letter = 'h', hours = 168) => 's'.repeat(from) + letter.repeat(to - from) + 's'.repeat(hours - to)
 const quiet = 's'.repeat(168)
@@ -44,5 +45,13 @@ describe('commonUpsets', () => {
   it('reaches the edges of the week and ranks by lost hours', () => {
     const ribbons = Array(4).fill(`hh${'s'.repeat(160)}hhhhhh`)
     expect(commonUpsets(ribbons).map(u => [u.from, u.to, u.lostHours])).toEqual([[162, 168, 24], [0, 2, 8]])
+  })
+})
+
+describe('lostBetween', () => {
+  it('counts lost hours inside the window only, edges half open', () => {
+    expect(lostBetween([strip(10, 14), strip(12, 20, 'd'), quiet], 12, 16)).toEqual({ hours: 2, loops: 1 })
+    expect(lostBetween([strip(10, 14)], 14, 20)).toEqual({ hours: 0, loops: 0 })
+    expect(lostBetween([strip(0, 168)], -5, 999)).toEqual({ hours: 168, loops: 1 })
   })
 })
