@@ -41,8 +41,8 @@ const finite = (x: Float64Array) => x.filter(v => v === v)
 const mean = (x: Float64Array) => { let s = 0; for (const v of x) s += v; return s / x.length }
 
 /**
- * Before and after a repair: ratios of IAE per hour and of error variance, and lost hours won a week, each with a 95 %
- * percentile interval from the stationary bootstrap of both windows, and what they say together.
+ * Before and after a repair: ratios of IAE per hour and of error variance, and lost hours won a week, each with a
+ * percentile interval (95 % unless `level` says otherwise) from the stationary bootstrap of both windows, and what they say together.
  *
  * Better (worse): at least one of IAE and lost hours says so beyond chance and the other does not say the opposite.
  * Windows that are too short, or whose set point or load differ, give `cannotTell` with the reason.
@@ -51,11 +51,13 @@ const mean = (x: Float64Array) => { let s = 0; for (const v of x) s += v; return
  * @param pvSpan,opSpan instrument and output span, above 0
  * @param settlingS settling horizon of the loop, s
  * @param seed of the bootstrap, kept with the answer
+ * @param level of the intervals, 0.5..0.998; above 0.95 where several looks share one error rate
  * @throws RangeError on spans that are not above 0 or bins of different length
  * Source: Politis, Romano (1994) for the bootstrap; Politis, White (2004) for the block length; the decision and the
  * limits of comparability are our own.
  */
-export function compareWindows(before: ProofRecord, after: ProofRecord, { pvSpan, opSpan, settlingS, seed }: { pvSpan: number, opSpan: number, settlingS: number, seed: number }): Comparison {
+export function compareWindows(before: ProofRecord, after: ProofRecord, { pvSpan, opSpan, settlingS, seed, level = 0.95 }: { pvSpan: number, opSpan: number, settlingS: number, seed: number, level?: number }): Comparison {
+  if (!(level >= 0.5 && level <= 0.998)) throw new RangeError(`compareWindows: the level must be 0.5 to 0.998 with ${REPLICATES} replicates, not ${level}`)
   if (!(pvSpan > 0) || !(opSpan > 0)) throw new RangeError(`compareWindows: spans must be above 0, not ${pvSpan} and ${opSpan}`)
   if (before.binS !== after.binS) throw new RangeError(`compareWindows: bins of ${before.binS} s against ${after.binS} s`)
   const random = seededRandom(seed)
@@ -71,9 +73,9 @@ export function compareWindows(before: ProofRecord, after: ProofRecord, { pvSpan
   const comparableConditions = checks.slice(2).every(c => c.ok)
 
   const length = enough ? Math.max(...bins.map(b => bootstrapBlockLength(b.absolute))) : null
-  const { iaeRatio, varianceRatio } = length ? ratios(bins[0], bins[1], length, random) : { iaeRatio: null, varianceRatio: null }
+  const { iaeRatio, varianceRatio } = length ? ratios(bins[0], bins[1], length, random, level) : { iaeRatio: null, varianceRatio: null }
   const lost = [finite(before.lostHours), finite(after.lostHours)]
-  const lostHoursWonPerWeek = lost.every(l => l.length >= 24) ? difference(lost[0], lost[1], random) : null
+  const lostHoursWonPerWeek = lost.every(l => l.length >= 24) ? difference(lost[0], lost[1], random, level) : null
 
   const base = { iaeRatio, varianceRatio, lostHoursWonPerWeek, checks, samplesBefore: bins[0].absolute.length, samplesAfter: bins[1].absolute.length, blockLength: length }
   if (!iaeRatio && !lostHoursWonPerWeek) return { ...base, verdict: 'cannotTell', reason: checks.filter(c => !c.ok).map(c => c.text).join('; ') + '.' }
@@ -115,7 +117,7 @@ function figures(u: Usable, index?: Int32Array): Figures {
   return { iae: absolute / n, variance: square / n - (error / n) ** 2 }
 }
 
-function ratios(before: Usable, after: Usable, blockLength: number, random: SeededRandom): { iaeRatio: Estimate | null, varianceRatio: Estimate | null } {
+function ratios(before: Usable, after: Usable, blockLength: number, random: SeededRandom, level: number): { iaeRatio: Estimate | null, varianceRatio: Estimate | null } {
   const seen = [figures(before), figures(after)]
   const iae = new Float64Array(REPLICATES)
   const variance = new Float64Array(REPLICATES)
@@ -125,12 +127,12 @@ function ratios(before: Usable, after: Usable, blockLength: number, random: Seed
     iae[r] = a.iae / b.iae
     variance[r] = a.variance / b.variance
   }
-  const of = (figure: keyof Figures, replicates: Float64Array) => (seen[0][figure] > 0 ? interval(seen[1][figure] / seen[0][figure], replicates) : null)
+  const of = (figure: keyof Figures, replicates: Float64Array) => (seen[0][figure] > 0 ? interval(seen[1][figure] / seen[0][figure], replicates, level) : null)
   return { iaeRatio: of('iae', iae), varianceRatio: of('variance', variance) }
 }
 
 /** Hours won a week: (share lost before - share lost after) x 168. */
-function difference(before: Float64Array, after: Float64Array, random: SeededRandom): Estimate {
+function difference(before: Float64Array, after: Float64Array, random: SeededRandom, level: number): Estimate {
   const value = (mean(before) - mean(after)) * 168
   // hours hang together over a shift; the rule of the block length needs a series that varies
   const block = (x: Float64Array) => Math.min(x.length / 3, Math.max(3, bootstrapBlockLength(x)))
@@ -138,12 +140,13 @@ function difference(before: Float64Array, after: Float64Array, random: SeededRan
   const replicates = new Float64Array(REPLICATES)
   const resampledMean = (x: Float64Array, length: number) => { let s = 0; for (const k of stationaryBootstrap(x.length, length, random)) s += x[k]; return s / x.length }
   for (let r = 0; r < REPLICATES; r++) replicates[r] = (resampledMean(before, lengths[0]) - resampledMean(after, lengths[1])) * 168
-  return interval(value, replicates)
+  return interval(value, replicates, level)
 }
 
-function interval(value: number, replicates: Float64Array): Estimate {
+function interval(value: number, replicates: Float64Array, level: number): Estimate {
+  const tail = (1 - level) / 2
   const sorted = replicates.slice().sort()
-  return { value, low: sorted[Math.floor(0.025 * (REPLICATES + 1)) - 1], high: sorted[Math.ceil(0.975 * (REPLICATES + 1)) - 1] }
+  return { value, low: sorted[Math.max(1, Math.floor(tail * (REPLICATES + 1) + 1e-9)) - 1], high: sorted[Math.min(REPLICATES, Math.ceil((1 - tail) * (REPLICATES + 1) - 1e-9)) - 1] }
 }
 
 const direction = (better: boolean, worse: boolean) => (better ? 1 : worse ? -1 : 0)
