@@ -10,7 +10,7 @@ export default defineEventHandler(async (event) => {
   }
   catch {
     setResponseStatus(event, 503)
-    setResponseHeader(event, 'Retry-After', '5')
+    setResponseHeader(event, 'Retry-After', 5)
     return { status: 'down', database: 'down', worker: 'unknown', queue: null, version }
   }
 })

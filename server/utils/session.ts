@@ -1,6 +1,5 @@
 import type { H3Event } from 'h3'
 import { getCookie } from 'h3'
-import { clearUserSession, getUserSession, setUserSession } from '#imports'
 import type { Person } from '../../shared/types/people'
 import { beginSession, endSession, touchSession } from '../services/sessions'
 import { environment } from './environment'
