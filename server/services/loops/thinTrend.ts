@@ -47,8 +47,7 @@ function pick({ t }: DaySamples, signals: Float64Array[], width: number, gapMs: 
         if (v > high) { high = v; greatest = i }
       }
       if (least >= 0) found.push(least)
-      if (greatest > least) found.push(greatest)
-      else if (greatest >= 0 && greatest !== least) found.push(greatest)
+      if (greatest >= 0 && greatest !== least) found.push(greatest)
     }
     for (let i = from; i < to; i++) {
       if (gapMs > 0 && width < 4 * gapMs && ((i > 0 && t[i] - t[i - 1] > gapMs) || (i + 1 < n && t[i + 1] - t[i] > gapMs))) found.push(i)
