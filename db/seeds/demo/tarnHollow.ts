@@ -216,7 +216,7 @@ function tell({ cause, fromDay, toDay }: Story, setup: LoopSetup, scenario: Loop
       if (!spanned) return
       const level = setup.type === 'level'
       const margin = Number(scenario.truth.facts.gainMargin ?? 1)
-      const tight = { gain: Number((setup.gain! * Math.max(1, margin / 1.08)).toPrecision(4)), integralTimeS: setup.integralTimeS }
+      const tight = { gain: Number((setup.gain! * Math.max(1, margin / 1.15)).toPrecision(4)), integralTimeS: setup.integralTimeS }
       const calm = { gain: Number((tight.gain / (level ? 0.5 : 2.8)).toPrecision(2)), integralTimeS: Number((tight.integralTimeS! * (level ? 6 : 1.6)).toPrecision(2)) }
       // broad excitation: the tight loop answers with its own period, the calm one hardly at all
       scenario.loads = scenario.loads.map(l => l.kind === 'coloured' ? { ...l, timeConstantS: Number(scenario.truth.facts.periodS) / 8 } : l)

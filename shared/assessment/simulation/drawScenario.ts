@@ -305,7 +305,7 @@ function movingSetpoint(draft: Draft, perDay: number, low: number, high: number)
   const most = loop.linear.kind === 'integrating' ? 0.14 * span : Math.min(0.14 * span, 12 * Math.abs(loop.linear.processGain))
   for (const time of at) {
     const wish = Math.min(most, loop.setup.tolerance * (low + (high - low) * random.uniform())) * (random.uniform() < 0.5 ? -1 : 1)
-    away = Math.abs(away + wish) > most || Math.abs(away + wish) > Math.abs(wish) * 2 ? away - wish : away + wish
+    away = Math.abs(away + wish) > most ? 0 : away + wish
     points.push({ at: Math.round(time), value: tidy(base + away), ramp: false })
   }
   return { kind: 'points', start: tidy(base), points }

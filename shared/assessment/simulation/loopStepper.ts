@@ -245,8 +245,9 @@ export class LoopStepper {
     if (this.onOff) {
       if (this.mode !== 1) {
         const e = this.sign * (sp - y)
-        if (e >= this.band) this.op = this.opHigh
+        if (e >= this.band || (!this.started && e > -this.band)) this.op = this.opHigh
         else if (e <= -this.band) this.op = this.opLow
+        this.started = true
       }
       return
     }
