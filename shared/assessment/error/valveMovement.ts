@@ -2,8 +2,8 @@
  * Valve travel and reversals from the controller output, in all modes, over neighbouring samples of the native grid.
  *
  * Travel: sum of |change of OP| in % of span, per day of time with OP. Reversals: turns of OP that are larger than the
- * noise band on both sides, per day. Noise band (our default): the larger of 0.2 % of span and 3 standard deviations
- * of OP's noise, estimated from the median absolute second difference (0.6745 sqrt 6 sigma for white noise).
+ * noise band on both sides, per day. Noise band (our default): the larger of 0.2 % of span and the 6 standard
+ * deviations (+-3) that OP's noise spans, estimated from the median absolute second difference (0.6745 sqrt 6 sigma for white noise).
  * On-off outputs: a switching is a change of more than half the span; switchings per day are counted with the same walk.
  * Cost O(n). Source: definition; the constant of the noise estimate is that of the normal distribution.
  *
@@ -23,7 +23,7 @@ export interface ValveMovement {
 export function valveMovement(op: Float64Array, stretches: { begin: number, end: number }[], intervalS: number, opSpan: number): ValveMovement {
   if (!(opSpan > 0)) throw new RangeError(`valveMovement: opSpan must be above 0, got ${opSpan}`)
   const sigma = noiseSigma(op)
-  const band = Math.max(0.002 * opSpan, 3 * sigma)
+  const band = Math.max(0.002 * opSpan, 6 * sigma)
   let travel = 0
   let pairs = 0
   let samples = 0

@@ -28,7 +28,7 @@ export const MEASURE_TEXTS: Readonly<Record<MeasureKey, { method: string, source
   varianceRatioHigh: { method: 'Upper end of the 95 % interval of the variance ratio, asymptotic variance.', source: 'Desborough, Harris 1992, Performance assessment measures for univariate feedback control' },
   headroom: { method: '1 - variance ratio: the share of the variance that control could remove at best.', source: 'Harris 1989, Assessment of control loop performance' },
   valveTravelPerDay: { method: 'Sum of |change of OP| in per cent of span, per day.', source: definition },
-  reversalsPerDay: { method: 'Turns of OP larger than the noise band on both sides, per day. Noise band: the larger of 0.2 % of span and 3 standard deviations of OP noise.', source: 'Definition; the noise band is our default' },
+  reversalsPerDay: { method: 'Turns of OP larger than the noise band on both sides, per day. Noise band: the larger of 0.2 % of span and 6 standard deviations (+-3) of OP noise.', source: 'Definition; the noise band is our default' },
   compressionFactor: { method: 'N / (N - n), n the zero second differences within two quanta.', source: 'Thornhill, Choudhury, Shah 2004, The impact of compression on data-driven process analyses' },
   quantisation: { method: 'Smallest step of PV found in the record.', source: 'Thornhill, Choudhury, Shah 2004, The impact of compression on data-driven process analyses' },
   frozenFraction: { method: 'Share of the received time with an unchanged PV while OP moves more than 2 % or SP moves, longer than the settling horizon.', source: practice },
