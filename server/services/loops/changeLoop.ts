@@ -2,9 +2,9 @@ import type { Knex } from 'knex'
 import { ensureAreas } from '../../../db/repositories/areas'
 import { insertAudit } from '../../../db/repositories/audit'
 import { findLoop, updateLoop, type LoopConfig } from '../../../db/repositories/loops'
-import { insertDue, listLoopWeekKeys, notifyWork } from '../../../db/repositories/loopWeekWrites'
 import { insertTuningRecord } from '../../../db/repositories/tuningRecords'
 import type { LoopChange } from '../../../shared/schemas/loops'
+import { reassess } from '../assessments/reassess'
 import { Refusal } from '../refusal'
 
 /** These words do not enter any figure. */
@@ -30,12 +30,8 @@ export async function changeLoop(db: Knex, by: { userId: number | null, name: st
       const tuningOf = (source: Partial<LoopConfig>) => Object.fromEntries(TUNING.map(key => [key, (key in source ? source[key] : loop[key]) as string | number | null]))
       await insertTuningRecord(trx, { loopId: loop.id, ticketId: null, userId: by.userId, actor: by.name, kind: 'imported', tuning: tuningOf(change), reason: 'Set-up of the loop changed.', changeNumber: null })
     }
-    const weeks = changed.some(key => !UNASSESSED.has(key)) ? await listLoopWeekKeys(trx, { loopIds: [loop.id] }) : []
-    if (weeks.length) {
-      await insertDue(trx, weeks, `set-up changed: ${changed.join(', ')}`, null)
-      await notifyWork(trx)
-    }
+    const weeks = changed.some(key => !UNASSESSED.has(key)) ? await reassess(trx, [loop.id], null, `set-up changed: ${changed.join(', ')}`) : 0
     await insertAudit(trx, { userId: by.userId, actor: by.name, action: 'loop.change', entity: 'loop', entityId: tag, data: Object.fromEntries(changed.map(key => [key, { from: loop[key], to: change[key] }])) })
-    return { changed, weeks: weeks.length }
+    return { changed, weeks }
   })
 }

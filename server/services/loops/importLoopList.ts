@@ -33,13 +33,14 @@ class Problem extends Error {}
 const positive = (c: Cell) => above(c, 0, 'must be above 0')
 const notNegative = (c: Cell) => { const v = c.number(); if (v < 0) throw new Problem('must not be below 0'); return v }
 const above = (c: Cell, low: number, message: string) => { const v = c.number(); if (!(v > low)) throw new Problem(message); return v }
-function oneOf<T extends string>(values: readonly T[], c: Cell): T {
+function oneOf<const T extends string>(values: readonly T[], c: Cell): T {
   const bare = (x: string) => x.toLowerCase().replace(/[\s_-]/g, '')
   const found = values.find(v => bare(v) === bare(c.text))
   if (!found) throw new Problem(`must be one of ${values.join(', ')}`)
   return found
 }
-const list = (text: string) => text.split(/[;|,]+/).map(x => x.trim()).filter(Boolean)
+// tags may hold blanks, so a blank parts them only where no other mark does
+const list = (text: string) => text.split(/[;|,]/.test(text) ? /[;|,]+/ : /\s+/).map(x => x.trim()).filter(Boolean)
 
 /** Column (compared without case, blanks, `_`) -> what it sets. Times of the tuning are in `timeUnit`, all others in seconds. */
 const COLUMNS: Record<string, (c: Cell) => Partial<LoopConfig>> = {

@@ -1,4 +1,5 @@
 import { demodulate } from './demodulate'
+import { lockedHarmonics } from './lockedHarmonics'
 import { phaseCoherence, type Demodulated } from './phaseCoherence'
 import { rankSources, type SourceRank } from './rankSources'
 
@@ -15,8 +16,6 @@ export interface GroupCandidate {
   strength: number
   /** natural log likelihood ratio for a sticking valve; 0 when nothing is known */
   valveEvidence: number
-  /** effect of the nonlinearity test in standard deviations of its surrogates; null when not tested */
-  nonlinearity: number | null
   upstream: string[]
 }
 
@@ -82,16 +81,18 @@ function groupsOfOnePeriod(loops: GroupCandidate[], fromMs: number, toMs: number
   }
   const clusters = new Map<number, number[]>()
   loops.forEach((_, k) => clusters.set(root(k), [...(clusters.get(root(k)) ?? []), k]))
-  return [...clusters.values()].filter(c => c.length >= 2).map(cluster => describe(cluster, loops, waves, periodS)).filter(g => g !== null)
+  const clock = { periodS, originMs: fromMs, windowS, windows }
+  return [...clusters.values()].filter(c => c.length >= 2).map(cluster => describe(cluster, loops, waves, clock)).filter(g => g !== null)
 }
 
 /** Members measured against the group's common wave; those that single linkage only chained in are left out. */
-function describe(cluster: number[], loops: GroupCandidate[], waves: (Demodulated | null)[], periodS: number): LoopGroup | null {
+function describe(cluster: number[], loops: GroupCandidate[], waves: (Demodulated | null)[], clock: { periodS: number, originMs: number, windowS: number, windows: number }): LoopGroup | null {
+  const { periodS } = clock
   const reference = cluster.reduce((best, k) => (loops[k].strength > loops[best].strength ? k : best), cluster[0])
   const measured = cluster.map(k => ({ loop: loops[k], ...phaseCoherence(waves[reference]!, waves[k]!, periodS) }))
     .filter(m => m.coherence >= LEAST_COHERENCE * 0.9)
   if (measured.length < 2) return null
-  const ranking = rankSources(measured.map(m => ({ tag: m.loop.tag, strength: m.loop.strength, lagS: m.lagS, valveEvidence: m.loop.valveEvidence, nonlinearity: m.loop.nonlinearity, upstream: m.loop.upstream })), periodS)
+  const ranking = rankSources(measured.map(m => ({ tag: m.loop.tag, strength: m.loop.strength, lagS: m.lagS, valveEvidence: m.loop.valveEvidence, nonlinearity: nonlinearityOf(m.loop, clock), upstream: m.loop.upstream })), periodS)
   const members = ranking.map((r, k) => {
     const m = measured.find(x => x.loop.tag === r.tag)!
     return { tag: r.tag, strength: m.loop.strength, lagS: m.lagS, coherence: m.coherence, rank: k + 1, score: r.score, reasons: r.reasons }
@@ -105,4 +106,9 @@ function describe(cluster: number[], loops: GroupCandidate[], waves: (Demodulate
 function wrap(lagS: number, periodS: number): number {
   const turns = lagS / periodS
   return (turns - Math.ceil(turns - 0.5)) * periodS
+}
+
+function nonlinearityOf(loop: GroupCandidate, clock: { periodS: number, originMs: number, windowS: number, windows: number }): number | null {
+  const { ratio } = lockedHarmonics(loop.series, { t0Ms: loop.t0Ms, sampleIntervalS: loop.sampleIntervalS, ...clock })
+  return ratio === ratio ? ratio : null
 }

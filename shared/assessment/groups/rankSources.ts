@@ -4,6 +4,7 @@ export interface SourceCandidate {
   /** lag behind an arbitrary reference, s, within half a period */
   lagS: number
   valveEvidence: number
+  /** harmonics locked to the fundamental, as a ratio to it; 0 none beyond chance, null not measured */
   nonlinearity: number | null
   upstream: string[]
 }
@@ -28,7 +29,7 @@ export function rankSources(candidates: readonly SourceCandidate[], periodS: num
     const reasons: string[] = []
     let score = 0
     const nonlinear = Math.max(0, c.nonlinearity ?? 0)
-    if (nonlinear > 2) {
+    if (nonlinear > 0) {
       score += 3 * nonlinear / most
       reasons.push(nonlinear === most ? 'its wave is the least sine-like of the group' : 'its wave is less sine-like than chance explains')
     }

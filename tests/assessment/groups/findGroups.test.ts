@@ -1,6 +1,7 @@
 import { describe, expect, it } from 'vitest'
 import { demodulate } from '../../../shared/assessment/groups/demodulate'
 import { findGroups, type GroupCandidate } from '../../../shared/assessment/groups/findGroups'
+import { lockedHarmonics } from '../../../shared/assessment/groups/lockedHarmonics'
 import { phaseCoherence } from '../../../shared/assessment/groups/phaseCoherence'
 import { rankSources } from '../../../shared/assessment/groups/rankSources'
 import { seededRandom } from '../../../shared/assessment/statistics/seededRandom'
@@ -23,7 +24,7 @@ function wanderingPhase(seed: number, periodS: number, wander: number): Float64A
 function loop(tag: string, phase: Float64Array, lagS: number, periodS: number, seed: number, more: Partial<GroupCandidate> = {}): GroupCandidate {
   const random = seededRandom(seed)
   const series = Float64Array.from(phase, (p) => Math.sin(p - 2 * Math.PI * lagS / periodS) + 0.3 * random.normal())
-  return { tag, series, t0Ms: 0, sampleIntervalS: DT, periodS, periodSdS: periodS * 0.01, strength: 0.8, valveEvidence: 0, nonlinearity: null, upstream: [], ...more }
+  return { tag, series, t0Ms: 0, sampleIntervalS: DT, periodS, periodSdS: periodS * 0.01, strength: 0.8, valveEvidence: 0, upstream: [], ...more }
 }
 
 describe('demodulate', () => {
@@ -71,11 +72,29 @@ describe('phaseCoherence', () => {
   })
 })
 
+describe('lockedHarmonics', () => {
+  const options = { t0Ms: 0, sampleIntervalS: DT, periodS: 1500, originMs: 0, windowS: 6000, windows: 90 }
+  const wave = (shape: (p: number) => number, noise: number) => {
+    const random = seededRandom(4)
+    return Float64Array.from(wanderingPhase(9, 1500, 0.15), p => shape(p) + noise * random.normal())
+  }
+  // Fourier series of the waves (handbook): square 1/k for odd k, triangle 1/k^2 for odd k
+  it('gives the Fourier ratios of square and triangle, and none for a sine, with noise', () => {
+    expect(lockedHarmonics(wave(p => Math.sign(Math.sin(p)), 0.3), options).ratio).toBeCloseTo(Math.hypot(1 / 3, 1 / 5), 1)
+    expect(lockedHarmonics(wave(p => 2 / Math.PI * Math.asin(Math.sin(p)), 0.1), options).ratio).toBeGreaterThan(0.08)
+    expect(lockedHarmonics(wave(p => 2 / Math.PI * Math.asin(Math.sin(p)), 0.1), options).ratio).toBeLessThan(0.16)
+    expect(lockedHarmonics(wave(Math.sin, 0.3), options).ratio).toBe(0)
+  })
+  it('cannot tell on a few windows', () => {
+    expect(lockedHarmonics(wave(Math.sin, 0), { ...options, windows: 4 }).ratio).toBeNaN()
+  })
+})
+
 describe('findGroups', () => {
   it('finds the loops of one wave with their lags, and leaves a loop of another period alone', () => {
     const common = wanderingPhase(1, 1200, 0.2)
     const groups = findGroups([
-      loop('A', common, 0, 1200, 11, { strength: 0.95, nonlinearity: 12 }), loop('B', common, 100, 1215, 12), loop('C', common, 300, 1190, 13),
+      loop('A', common, 0, 1200, 11, { strength: 0.95, valveEvidence: 2 }), loop('B', common, 100, 1215, 12), loop('C', common, 300, 1190, 13),
       loop('D', wanderingPhase(2, 400, 0.2), 0, 400, 14),
     ], span)
     expect(groups).toHaveLength(1)
@@ -111,7 +130,7 @@ describe('findGroups', () => {
 describe('rankSources', () => {
   const plain = { strength: 0.5, lagS: 0, valveEvidence: 0, nonlinearity: null, upstream: [] as string[] }
   it('puts the most nonlinear loop first (Thornhill 2005), and says so', () => {
-    const [first] = rankSources([{ ...plain, tag: 'A', nonlinearity: 3 }, { ...plain, tag: 'B', nonlinearity: 15 }], 100)
+    const [first] = rankSources([{ ...plain, tag: 'A', nonlinearity: 0.05 }, { ...plain, tag: 'B', nonlinearity: 0.3 }], 100)
     expect(first.tag).toBe('B')
     expect(first.reasons.join()).toContain('least sine-like')
   })
