@@ -4,9 +4,12 @@ export interface NewMail { key: string, kind: string, userId: number | null, rec
 export interface DueMail extends NewMail { id: number, attempts: number }
 export type MailStatus = 'waiting' | 'sending' | 'sent' | 'failed'
 
+/** Now, to the millisecond: the sender's clock has no finer grain, and would find a mail queued in its own millisecond not due yet. */
+const atOnce = (db: Database) => db.raw('date_trunc(\'milliseconds\', now())')
+
 /** False when a mail of this key was queued before. */
 export async function insertMail(db: Database, m: NewMail): Promise<boolean> {
-  const rows = await db('mails').insert({ key: m.key, kind: m.kind, user_id: m.userId, recipient: m.recipient, subject: m.subject, text: m.text, html: m.html ?? null, headers: JSON.stringify(m.headers ?? {}) })
+  const rows = await db('mails').insert({ key: m.key, kind: m.kind, user_id: m.userId, recipient: m.recipient, subject: m.subject, text: m.text, html: m.html ?? null, headers: JSON.stringify(m.headers ?? {}), next_attempt_at: atOnce(db) })
     .onConflict('key').ignore().returning('id')
   return rows.length > 0
 }
@@ -41,7 +44,7 @@ export async function listMails(db: Database, { status, limit = 100 }: { status?
 }
 
 export async function retryFailedMail(db: Database, id: number): Promise<boolean> {
-  return await db('mails').where({ id, status: 'failed' }).update({ status: 'waiting', attempts: 0, next_attempt_at: db.fn.now(), error: null }) > 0
+  return await db('mails').where({ id, status: 'failed' }).update({ status: 'waiting', attempts: 0, next_attempt_at: atOnce(db), error: null }) > 0
 }
 
 export async function insertCaughtMail(db: Database, m: { from: string, to: string[], subject: string, raw: Buffer }): Promise<void> {

@@ -1,0 +1,1 @@
+export function dumpSchema(url: string, programs?: string): Promise<string>
