@@ -33,6 +33,8 @@ const LEAST_EVIDENCE = 40
 const TRANSIENT = 0.85
 /** Swing to first harmonic: 1 for a sine, 0.79 for a square, 1.23 for a triangle wave. */
 const LARGEST_SWING = 1.3
+/** Least power of the narrow middle of the band over that of its flanks, in the episodes: noise has 1, whatever its strength. */
+const LEAST_CONTRAST = 1.5
 /** Samples that the mean cycle is taken from. */
 const CYCLE_SAMPLES = 6000
 
@@ -125,6 +127,7 @@ function examine(error: Float64Array, spectrum: StepSpectrum, variance: number, 
   const spans = episodes(envelope, smoothEnvelope, { threshold, background, perPeriod })
     .filter(span => evidence(smoothEnvelope, span, background) / perPeriod > LEAST_EVIDENCE && largestShare(envelope, span, Math.round(2 * perPeriod)) < TRANSIENT)
   if (!spans.length) return null
+  if (!(contrast(envelope, smoothEnvelope, spans) > LEAST_CONTRAST)) return null
   const covariance = maskedAutocovariance(a, spans, Math.ceil(PERIODS * perPeriod))
   const acf = fineAutocorrelation(covariance, perPeriod)
   const { regularity: r } = regularity(acf)
@@ -193,6 +196,13 @@ function evidence(smoothEnvelope: Float64Array, [from, to]: [number, number], ba
   for (let i = from; i < to; i++) squares += smoothEnvelope[i] ** 2
   const ratio = squares / (to - from) / background ** 2
   return ratio > 1 ? (to - from) * (ratio - 1 - Math.log(ratio)) : 0
+}
+
+/** Power that smoothing leaves over power that it takes away, in the episodes: noise that only grew louder for a while has none. */
+function contrast(envelope: Float64Array, smoothEnvelope: Float64Array, spans: [number, number][]): number {
+  let all = 0, middle = 0
+  for (const [from, to] of spans) for (let i = from; i < to; i++) { all += envelope[i] ** 2; middle += smoothEnvelope[i] ** 2 }
+  return middle / Math.max(all - middle, 1e-12 * all)
 }
 
 /** Largest share of the energy within `width` successive values. */
