@@ -19,10 +19,11 @@ const moreOrFewer = (change: number): string =>
 export function fleetSentence(summary: FleetSummary, groups: FleetGroup[], filtered: boolean): Piece[] {
   const { loops, overTwenty, lostHours } = summary
   const whom = filtered ? `${counted(loops, 'loop')} shown` : counted(loops, 'loop')
+  const against = summary.change === null ? '' : `, ${moreOrFewer(summary.change)}`
   const pieces: Piece[] = overTwenty > 0
-    ? [strong(`${formatCount(overTwenty)} of ${whom}`), plain(' lost more than 20 hours.')]
+    ? [strong(`${formatCount(overTwenty)} of ${whom}`), plain(` lost more than 20 hours; all together lost `), strong(`${formatCount(lostHours)} h`), plain(`${against}.`)]
     : lostHours > 0
-      ? [plain(`None of ${whom} lost more than 20 hours; together they lost `), strong(`${formatCount(lostHours)} h`), plain('.')]
+      ? [plain(`None of ${whom} lost more than 20 hours; together they lost `), strong(`${formatCount(lostHours)} h`), plain(`${against}.`)]
       : [strong('No hour was lost'), plain(` by the ${whom}.`)]
   const largest = groups[0]
   if (!filtered && largest && largest.members > 1) {
@@ -32,12 +33,6 @@ export function fleetSentence(summary: FleetSummary, groups: FleetGroup[], filte
     if (groups.length > 1) pieces.push(plain(` ${opening(groups.length - 1)} more ${groups.length === 2 ? 'group does' : 'groups do'} so.`))
   }
   return pieces
-}
-
-/** The whole fleet against the week before, for the line of the legend. */
-export function lostSentence(summary: Pick<FleetSummary, 'lostHours' | 'change'>): string {
-  const against = summary.change === null ? '' : `, ${moreOrFewer(summary.change)}`
-  return `${counted(summary.lostHours, 'loop-hour')} lost${against}`
 }
 
 /** What matters in the plant: how much was lost, to what, where, and whether many lost it at once. */

@@ -1,5 +1,5 @@
 import { describe, expect, it } from 'vitest'
-import { fleetSentence, lostSentence, plantSentence } from '../../shared/format/sentence'
+import { fleetSentence, plantSentence } from '../../shared/format/sentence'
 import { noHours } from '../../shared/ribbon/states'
 import type { FleetSummary } from '../../shared/types/fleet'
 import type { PlantAnswer } from '../../shared/types/plant'
@@ -10,10 +10,10 @@ const summary = (over: Partial<FleetSummary>): FleetSummary => ({ loops: 238, lo
 describe('fleetSentence', () => {
   it('says how many lost much and who hunts together', () => {
     expect(text(fleetSentence(summary({}), [{ letter: 'A', period: 2280, members: 9, likelySource: 'FIC-2107' }], false)))
-      .toBe('14 of 238 loops lost more than 20 hours. Nine hunt together with a period of 38 min; the likely source is FIC-2107.')
+      .toBe('14 of 238 loops lost more than 20 hours; all together lost 531 h, 47 fewer than the week before. Nine hunt together with a period of 38 min; the likely source is FIC-2107.')
   })
   it('does not call calm what it has not seen: none above 20 h still lost hours', () => {
-    expect(text(fleetSentence(summary({ overTwenty: 0 }), [], false))).toBe('None of 238 loops lost more than 20 hours; together they lost 531 h.')
+    expect(text(fleetSentence(summary({ overTwenty: 0 }), [], false))).toBe('None of 238 loops lost more than 20 hours; together they lost 531 h, 47 fewer than the week before.')
     expect(text(fleetSentence(summary({ overTwenty: 0, lostHours: 0, loops: 1 }), [], true))).toBe('No hour was lost by the 1 loop shown.')
   })
   it('names no source where there is none, and counts further groups', () => {
@@ -22,8 +22,8 @@ describe('fleetSentence', () => {
     expect(text(fleetSentence(summary({}), [g('A', 3)], true))).not.toContain('hunt together')
   })
   it('compares with the week before only where there was one', () => {
-    expect(lostSentence(summary({}))).toBe('531 loop-hours lost, 47 fewer than the week before')
-    expect(lostSentence(summary({ change: null, lostHours: 1 }))).toBe('1 loop-hour lost')
+    expect(text(fleetSentence(summary({ change: null }), [], false))).toBe('14 of 238 loops lost more than 20 hours; all together lost 531 h.')
+    expect(text(fleetSentence(summary({ change: 0 }), [], false))).toContain('531 h, as many as the week before.')
   })
 })
 
