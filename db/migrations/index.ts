@@ -8,6 +8,7 @@ import { up as tickets } from './006-tickets'
 import { up as mail } from './007-mail'
 import { up as tuning } from './008-tuning'
 import { up as assessmentsDue } from './009-assessments-due'
+import { up as ticketWork } from './010-ticket-work'
 
 /** In order. Never edited once landed: add one at the end. */
 export const migrations: { name: string, up: (db: Knex) => Promise<void> }[] = [
@@ -20,4 +21,5 @@ export const migrations: { name: string, up: (db: Knex) => Promise<void> }[] = [
   { name: '007-mail', up: mail },
   { name: '008-tuning', up: tuning },
   { name: '009-assessments-due', up: assessmentsDue },
+  { name: '010-ticket-work', up: ticketWork },
 ]

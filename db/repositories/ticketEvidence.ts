@@ -16,3 +16,17 @@ export async function listRibbons(db: Database, loopId: number): Promise<{ week:
   const rows = await db('loop_weeks').where({ loop_id: loopId }).orderBy('week_start').select('week', 'week_start', 'ribbon')
   return rows.map(r => ({ week: r.week, weekStart: r.week_start, ribbon: r.ribbon }))
 }
+
+/** Mark of what is on record for loops: changes when one of their weeks is assessed again. */
+export async function readDataMark(db: Database, loopIds: number[]): Promise<string> {
+  const row = await db('loop_weeks').whereIn('loop_id', loopIds).first(db.raw('count(*)::int as weeks'), db.raw('max(assessed_at) as last'))
+  return `${row?.weeks ?? 0} ${row?.last ? new Date(row.last).getTime() : 0}`
+}
+
+export async function findNewestWeek(db: Database): Promise<string | null> {
+  return (await db('loop_weeks').max('week as week').first())?.week ?? null
+}
+
+export async function hasGroup(db: Database, id: number): Promise<boolean> {
+  return Boolean(await db('loop_groups').where({ id }).first('id'))
+}

@@ -1,6 +1,6 @@
 import type { Knex } from 'knex'
 import type { Database } from '../knex'
-import type { KeptEvidence, Outcome, TicketProof, TicketState } from '../../shared/types/tickets'
+import type { KeptEvidence, Outcome, TicketChecks, TicketProof, TicketState } from '../../shared/types/tickets'
 
 export interface TicketRow {
   id: number
@@ -16,11 +16,13 @@ export interface TicketRow {
   followUpOf: number | null
   week: string
   evidence: KeptEvidence[]
-  checks: Record<string, Record<string, unknown>>
+  /** by tag, then by check: the answers, with `at` and `by` */
+  checks: TicketChecks
   outcome: Outcome | null
   closeReason: string | null
   proof: TicketProof | null
   proofFinal: boolean
+  proofFinalAt: Date | null
   workDoneAt: Date | null
   closedAt: Date | null
   closedBy: number | null
@@ -34,7 +36,7 @@ function toTicket(r: Record<string, any>): TicketRow {
   return {
     id: r.id, title: r.title, state: r.state, priority: r.priority, dueOn: r.due_on, assigneeId: r.assignee_id, assignee: r.assignee ?? null,
     openedBy: r.opened_by, opener: r.opener ?? null, groupId: r.group_id, followUpOf: r.follow_up_of, week: r.week, evidence: r.evidence,
-    checks: r.checks, outcome: r.outcome, closeReason: r.close_reason, proof: r.proof, proofFinal: r.proof_final, workDoneAt: r.work_done_at,
+    checks: r.checks, outcome: r.outcome, closeReason: r.close_reason, proof: r.proof, proofFinal: r.proof_final, proofFinalAt: r.proof_final_at, workDoneAt: r.work_done_at,
     closedAt: r.closed_at, closedBy: r.closed_by, version: r.version, createdAt: r.created_at, updatedAt: r.updated_at, loops: r.loops ?? [],
   }
 }
@@ -58,16 +60,16 @@ export async function lockTicket(trx: Database, id: number): Promise<TicketRow |
   return held ? findTicket(trx, id) : null
 }
 
-export interface TicketFilter { states?: TicketState[], assigneeId?: number, loopTag?: string, area?: string, due?: 'overdue' | 'week', search?: string, limit?: number, offset?: number }
+export interface TicketFilter { states?: TicketState[], assigneeId?: number, loopTag?: string, area?: string, due?: 'overdue' | 'week', /** today in the site's zone, YYYY-MM-DD */ today?: string, search?: string, limit?: number, offset?: number }
 
 function narrowed(query: Knex.QueryBuilder, db: Database, f: TicketFilter): Knex.QueryBuilder {
   if (f.states?.length) query.whereIn('t.state', f.states)
   if (f.assigneeId) query.where('t.assignee_id', f.assigneeId)
   if (f.loopTag) query.whereExists(db('ticket_loops as x').join('loops as y', 'y.id', 'x.loop_id').whereRaw('x.ticket_id = t.id').where('y.tag', f.loopTag))
   if (f.area) query.whereExists(db('ticket_loops as x').join('loops as y', 'y.id', 'x.loop_id').join('areas as z', 'z.id', 'y.area_id').whereRaw('x.ticket_id = t.id').where('z.name', f.area))
-  if (f.due === 'overdue') query.whereRaw('t.due_on < current_date').whereNotIn('t.state', ['closed', 'dropped'])
-  if (f.due === 'week') query.whereRaw('t.due_on <= current_date + 7').whereNotIn('t.state', ['closed', 'dropped'])
-  if (f.search) query.where(b => b.whereILike('t.title', `%${f.search}%`).orWhereExists(db('ticket_loops as x').join('loops as y', 'y.id', 'x.loop_id').whereRaw('x.ticket_id = t.id').whereILike('y.tag', `%${f.search}%`)))
+  if (f.due === 'overdue') query.whereRaw('t.due_on < coalesce(?::date, current_date)', [f.today ?? null]).whereNotIn('t.state', ['closed', 'dropped'])
+  if (f.due === 'week') query.whereRaw('t.due_on <= coalesce(?::date, current_date) + 7', [f.today ?? null]).whereNotIn('t.state', ['closed', 'dropped'])
+  if (f.search) query.where(b => b.whereILike('t.title', `%${f.search}%`).orWhereRaw('t.id::text = ?', [f.search!.replace(/^t-/i, '')]).orWhereExists(db('ticket_loops as x').join('loops as y', 'y.id', 'x.loop_id').whereRaw('x.ticket_id = t.id').whereILike('y.tag', `%${f.search}%`)))
   return query
 }
 
@@ -88,11 +90,11 @@ export async function insertTicket(trx: Database, t: NewTicket): Promise<number>
   return row.id
 }
 
-export type TicketChange = Partial<Pick<TicketRow, 'title' | 'state' | 'priority' | 'dueOn' | 'assigneeId' | 'checks' | 'outcome' | 'closeReason' | 'proof' | 'proofFinal' | 'workDoneAt' | 'closedAt' | 'closedBy'>>
+export type TicketChange = Partial<Pick<TicketRow, 'title' | 'state' | 'priority' | 'dueOn' | 'assigneeId' | 'checks' | 'outcome' | 'closeReason' | 'proof' | 'proofFinal' | 'proofFinalAt' | 'workDoneAt' | 'closedAt' | 'closedBy'>>
 
 const columns: Record<keyof TicketChange, string> = {
   title: 'title', state: 'state', priority: 'priority', dueOn: 'due_on', assigneeId: 'assignee_id', checks: 'checks', outcome: 'outcome', closeReason: 'close_reason',
-  proof: 'proof', proofFinal: 'proof_final', workDoneAt: 'work_done_at', closedAt: 'closed_at', closedBy: 'closed_by',
+  proof: 'proof', proofFinal: 'proof_final', proofFinalAt: 'proof_final_at', workDoneAt: 'work_done_at', closedAt: 'closed_at', closedBy: 'closed_by',
 }
 
 /** Writes a change and counts the version up; call it with the row locked. */
@@ -110,7 +112,7 @@ export interface TicketEvent { id: number, at: Date, userId: number | null, acto
 export async function insertTicketEvent(trx: Database, e: { ticketId: number, userId: number | null, actor: string, kind: string, text?: string | null, data?: Record<string, unknown>, idempotencyKey?: string | null, at?: Date }): Promise<boolean> {
   const rows = await trx('ticket_events').insert({
     ticket_id: e.ticketId, user_id: e.userId, actor: e.actor, kind: e.kind, text: e.text ?? null, data: JSON.stringify(e.data ?? {}), idempotency_key: e.idempotencyKey ?? null, ...(e.at ? { at: e.at } : {}),
-  }).onConflict(trx.raw('(idempotency_key) where idempotency_key is not null') as never).ignore().returning('id')
+  }).onConflict(trx.raw('(ticket_id, idempotency_key) where idempotency_key is not null') as never).ignore().returning('id')
   return rows.length > 0
 }
 
@@ -139,11 +141,15 @@ const toFile = (r: Record<string, any>): TicketFile => ({ id: r.id, ticketId: r.
 /** null when a file with this idempotency key is there already. */
 export async function insertTicketFile(trx: Database, f: { ticketId: number, key: string, name: string, mediaType: string, bytes: number, userId: number | null, idempotencyKey: string | null }): Promise<number | null> {
   const rows = await trx('ticket_files').insert({ ticket_id: f.ticketId, file_key: f.key, name: f.name, media_type: f.mediaType, bytes: f.bytes, user_id: f.userId, idempotency_key: f.idempotencyKey })
-    .onConflict(trx.raw('(idempotency_key) where idempotency_key is not null') as never).ignore().returning('id')
+    .onConflict(trx.raw('(ticket_id, idempotency_key) where idempotency_key is not null') as never).ignore().returning('id')
   return rows[0]?.id ?? null
 }
 export async function listTicketFiles(db: Database, ticketId: number): Promise<TicketFile[]> {
   return (await db('ticket_files').where({ ticket_id: ticketId }).orderBy('id')).map(toFile)
+}
+export async function findTicketFileByKey(db: Database, ticketId: number, idempotencyKey: string): Promise<TicketFile | null> {
+  const row = await db('ticket_files').where({ ticket_id: ticketId, idempotency_key: idempotencyKey }).first()
+  return row ? toFile(row) : null
 }
 export async function findTicketFile(db: Database, ticketId: number, id: number): Promise<TicketFile | null> {
   const row = await db('ticket_files').where({ ticket_id: ticketId, id }).first()
@@ -155,20 +161,47 @@ export async function listWatchedClosedTickets(db: Database, since: Date): Promi
   return (await select(db).where('t.state', 'closed').where('t.closed_at', '>=', since).orderBy('t.id')).map(toTicket)
 }
 
+export async function listFollowUps(db: Database, ticketId: number): Promise<number[]> {
+  return (await db('tickets').where({ follow_up_of: ticketId }).orderBy('id').select('id')).map(r => Number(r.id))
+}
+
+export interface BenefitRow { area: string, month: string, hours: number, provisionalHours: number, slidBackHours: number, tickets: number[] }
+
 export async function hasFollowUp(db: Database, ticketId: number): Promise<boolean> {
   return Boolean(await db('tickets').where({ follow_up_of: ticketId }).first('id'))
 }
 
-/** Hours a week won back by proven tickets, by area and month of closing; the provisional ones apart. */
-export async function listBenefit(db: Database): Promise<{ area: string, month: string, hours: number, provisionalHours: number, tickets: number }[]> {
+/**
+ * Hours a week won back by proven tickets, by area and month of closing. The provisional ones stand apart, and so do
+ * those that slid back: a win that a follow-up had to take up again is no longer one.
+ */
+export async function listBenefit(db: Database, zone: string): Promise<BenefitRow[]> {
   const { rows } = await db.raw(`
-    select coalesce(a.name, 'no area') as area, to_char(t.closed_at, 'YYYY-MM') as month,
-      sum(case when t.proof_final then (p->'lostHoursWonPerWeek'->>'value')::float8 else 0 end) as hours,
-      sum(case when t.proof_final then 0 else (p->'lostHoursWonPerWeek'->>'value')::float8 end) as provisional_hours,
-      count(distinct t.id)::int as tickets
+    select coalesce(a.name, '') as area, to_char(t.closed_at at time zone ?, 'YYYY-MM') as month,
+      sum(w.hours) filter (where t.proof_final and not w.slid) as hours,
+      sum(w.hours) filter (where not t.proof_final and not w.slid) as provisional_hours,
+      sum(w.hours) filter (where w.slid) as slid_back_hours,
+      array_agg(distinct t.id order by t.id) as tickets
     from tickets t cross join lateral jsonb_array_elements(t.proof->'loops') p
+      cross join lateral (select (p->'lostHoursWonPerWeek'->>'value')::float8 as hours, exists (select 1 from tickets f where f.follow_up_of = t.id) as slid) w
       join loops l on l.tag = p->>'tag' left join areas a on a.id = l.area_id
-    where t.state = 'closed' and t.proof->>'verdict' = 'better' and p->>'verdict' = 'better' and p->'lostHoursWonPerWeek' <> 'null'::jsonb
-    group by 1, 2 order by 2 desc, 1`)
-  return rows.map((r: Record<string, any>) => ({ area: r.area, month: r.month, hours: Number(r.hours), provisionalHours: Number(r.provisional_hours), tickets: r.tickets }))
+    where t.state = 'closed' and t.proof->>'verdict' = 'better' and p->>'verdict' = 'better' and w.hours is not null
+    group by 1, 2 order by 2 desc, 1`, [zone])
+  return rows.map((r: Record<string, any>) => ({ area: r.area, month: r.month, hours: Number(r.hours ?? 0), provisionalHours: Number(r.provisional_hours ?? 0), slidBackHours: Number(r.slid_back_hours ?? 0), tickets: r.tickets.map(Number) }))
+}
+
+/** Tickets not closed or dropped whose due date is past. */
+export async function listOverdueTickets(db: Database, today: string): Promise<{ id: number, title: string, dueOn: string, assigneeId: number | null, openedBy: number | null }[]> {
+  const rows = await db('tickets').whereNotIn('state', ['closed', 'dropped']).where('due_on', '<', today).orderBy('id').select('id', 'title', db.raw('to_char(due_on, \'YYYY-MM-DD\') as due_on'), 'assignee_id', 'opened_by')
+  return rows.map(r => ({ id: r.id, title: r.title, dueOn: r.due_on, assigneeId: r.assignee_id, openedBy: r.opened_by }))
+}
+
+export async function hasTicketEntry(db: Database, ticketId: number, idempotencyKey: string): Promise<boolean> {
+  return Boolean(await db('ticket_events').where({ ticket_id: ticketId, idempotency_key: idempotencyKey }).first('id'))
+}
+
+/** Everybody who closed a ticket or worked on it. */
+export async function listPeopleOfTicket(db: Database, ticketId: number): Promise<number[]> {
+  const rows = await db('ticket_events').where({ ticket_id: ticketId }).whereIn('kind', ['closed', 'moved', 'check', 'tuning']).whereNotNull('user_id').distinct('user_id')
+  return rows.map(r => Number(r.user_id))
 }

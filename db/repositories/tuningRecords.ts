@@ -13,3 +13,9 @@ export async function listTuningRecords(db: Database, loopId: number): Promise<T
   const rows = await db('tuning_records').where({ loop_id: loopId }).orderBy('at', 'desc').orderBy('id', 'desc')
   return rows.map(r => ({ id: r.id, at: r.at, actor: r.actor, kind: r.kind, tuning: r.tuning, reason: r.reason, changeNumber: r.change_number, ticketId: r.ticket_id }))
 }
+
+/** As found and as left of one ticket, oldest first, with the loop they belong to. */
+export async function listTuningOfTicket(db: Database, ticketId: number): Promise<(TuningRecord & { tag: string })[]> {
+  const rows = await db('tuning_records as r').join('loops as l', 'l.id', 'r.loop_id').where('r.ticket_id', ticketId).orderBy('r.at').orderBy('r.id').select('r.*', 'l.tag')
+  return rows.map(r => ({ id: r.id, tag: r.tag, at: r.at, actor: r.actor, kind: r.kind, tuning: r.tuning, reason: r.reason, changeNumber: r.change_number, ticketId: r.ticket_id }))
+}

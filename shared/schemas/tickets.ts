@@ -1,13 +1,18 @@
 import { z } from 'zod'
+import { weekFrame } from '../assessment/week/isoWeek'
 import { OUTCOMES, TICKET_STATES } from '../types/tickets'
 
 const priority = z.union([z.literal(1), z.literal(2), z.literal(3)])
 const day = z.iso.date()
-const week = z.string().regex(/^\d{4}-W\d{2}$/, 'an ISO week such as 2026-W48')
+/** 2026-W54 is none. */
+export const weekSchema = z.string().refine((text) => {
+  try { return Boolean(weekFrame(text, 'UTC')) }
+  catch { return false }
+}, 'must be an ISO week such as 2026-W48')
 
 export const openTicketSchema = z.object({
   tags: z.array(z.string().min(1)).min(1, 'name at least one loop').max(200),
-  week,
+  week: weekSchema.optional(),
   title: z.string().trim().max(200).optional(),
   priority: priority.optional(),
   dueOn: day.nullish(),
@@ -26,6 +31,7 @@ export const changeTicketSchema = z.object({
   watching: z.boolean().optional(),
   reason: z.string().trim().max(2000).optional(),
   workDoneAt: z.iso.datetime().optional(),
+  at: z.iso.datetime().optional(),
 })
 
 const idempotencyKey = z.string().min(8).max(100).optional()
@@ -37,12 +43,17 @@ export const entrySchema = z.object({
   at: z.iso.datetime().optional(),
   entry: z.discriminatedUnion('kind', [
     z.object({ kind: z.literal('comment'), text: z.string().trim().min(1).max(4000) }),
-    z.object({ kind: z.literal('check'), checkId: z.string().min(1).max(60), values: z.record(z.string(), cell) }),
+    z.object({ kind: z.literal('check'), checkId: z.string().min(1).max(60), tag: z.string().min(1).max(200).optional(), values: z.record(z.string(), cell), replaces: z.string().nullish() }),
     z.object({ kind: z.literal('tuning'), tag: z.string().min(1), stage: z.enum(['asFound', 'asLeft']), tuning: z.record(z.string(), cell), reason: z.string().trim().min(1, 'say why').max(2000), changeNumber: z.string().trim().max(100).nullish() }),
   ]),
 })
 
-export const closeTicketSchema = z.object({ outcome: z.enum(OUTCOMES), reason: z.string().trim().max(2000).optional(), version: z.number().int().positive().optional() })
+export const proofQuerySchema = z.object({
+  beforeFrom: z.iso.datetime().optional(), beforeTo: z.iso.datetime().optional(),
+  afterFrom: z.iso.datetime().optional(), afterTo: z.iso.datetime().optional(),
+})
+
+export const closeTicketSchema = z.object({ outcome: z.enum(OUTCOMES), reason: z.string().trim().max(2000).optional(), version: z.number().int().positive().optional(), windows: proofQuerySchema.optional() })
 
 export const listTicketsSchema = z.object({
   state: z.string().optional().transform(value => value?.split(',').filter(s => (TICKET_STATES as readonly string[]).includes(s)) as (typeof TICKET_STATES[number])[] | undefined),
@@ -56,8 +67,3 @@ export const listTicketsSchema = z.object({
 })
 
 export const ticketIdSchema = z.object({ id: z.coerce.number().int().positive() })
-
-export const proofQuerySchema = z.object({
-  beforeFrom: z.iso.datetime().optional(), beforeTo: z.iso.datetime().optional(),
-  afterFrom: z.iso.datetime().optional(), afterTo: z.iso.datetime().optional(),
-})

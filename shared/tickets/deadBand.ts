@@ -5,8 +5,9 @@
  * @param firstAnswerUp output, %, at which the process variable first moved while the output was raised
  * @param firstAnswerDown output, %, at which it first moved while the output was lowered afterwards
  * @param highest output, %, at which the direction was turned round; at least `firstAnswerUp`
- * @param step size of one step, %, above 0: half of it is the uncertainty of the result
- * @returns `deadBand`, %: output travel between the turn and the first answer; `uncertainty`, %, of it
+ * @param step size of one step, %, above 0
+ * @returns `deadBand`, %: output travel between the turn and the first answer; `uncertainty`, %: one
+ *   step, because the answer came somewhere within the last one, so the true value is up to that much smaller
  * @throws RangeError when the figures cannot come from such a test
  * Source: common practice, no source; the definition (range through which the input is varied on reversal without
  * an observable change of the output) is that of ANSI/ISA-51.1, from memory.

@@ -53,6 +53,7 @@ export interface LoopProof {
   checks: ProofCheck[]
   method: string
   source: string
+  /** bins of ten minutes in a normal mode */
   samplesBefore: number
   samplesAfter: number
   blockLength: number | null
@@ -61,6 +62,40 @@ export interface LoopProof {
 
 export interface TicketProof {
   verdict: ProofVerdict
+  /** one sentence */
+  reason: string
   provisional: boolean
   loops: LoopProof[]
+  /** windows were given by a person instead of chosen by the program */
+  chosenByHand: boolean
+  workBeganAt: string | null
+  workDoneAt: string | null
+}
+
+/** Answer to a field check. */
+export interface CheckAnswer { values: Record<string, string | number | null>, at: string, by: string }
+/** by tag, then by check */
+export type TicketChecks = Record<string, Record<string, CheckAnswer>>
+
+/** What a list of tickets needs of one. */
+export interface TicketItem {
+  id: number
+  title: string
+  state: TicketState
+  priority: 1 | 2 | 3
+  dueOn: string | null
+  overdue: boolean
+  assigneeId: number | null
+  assignee: string | null
+  loops: { tag: string, description: string, area: string | null }[]
+  week: string
+  verdict: Verdict
+  lostHours: number
+  ribbon: string
+  outcome: Outcome | null
+  proof: { verdict: ProofVerdict, provisional: boolean } | null
+  followUpOf: number | null
+  version: number
+  createdAt: string | Date
+  closedAt: string | Date | null
 }

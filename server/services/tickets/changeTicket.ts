@@ -1,13 +1,14 @@
 import type { Knex } from 'knex'
 import { insertTicketEvent, lockTicket, setWatching, updateTicket, type TicketChange, type TicketRow } from '../../../db/repositories/tickets'
 import { insertAudit } from '../../../db/repositories/audit'
-import { findUser } from '../../../db/repositories/users'
 import { atLeast } from '../../../shared/types/people'
 import { objectionToMove } from '../../../shared/tickets/moves'
 import type { TicketState } from '../../../shared/types/tickets'
-import { notifyAssignment, notifyHandBack } from './notifications'
 import { Refusal } from '../refusal'
+import { notifyAssignment, notifyHandBack, notifySentBack } from './notifications'
+import { requireAssignee } from './requireAssignee'
 import { noSuchTicket } from './refusals'
+import { writtenAt } from './writtenAt'
 import type { Actor } from './caller'
 
 export interface ChangeTicketInput {
@@ -21,6 +22,8 @@ export interface ChangeTicketInput {
   watching?: boolean
   reason?: string
   workDoneAt?: string
+  /** when it was written on a device without connection */
+  at?: string
 }
 
 /**
@@ -34,7 +37,7 @@ export async function changeTicket(db: Knex, actor: Actor, id: number, input: Ch
     if (input.watching !== undefined && actor.userId) await setWatching(trx, id, actor.userId, input.watching)
     const wants = wanted(ticket, input)
     if (Object.keys(wants).length === 0) return
-    if (ticket.version !== input.version) throw new Refusal(409, 'changed_meanwhile', `Somebody changed ticket ${id} meanwhile. Nothing of yours was saved yet; look at both and save again.`, { version: ticket.version, state: ticket.state })
+    if (ticket.version !== input.version) throw new Refusal(409, 'changed_meanwhile', `Somebody changed ticket ${id} meanwhile. Nothing of yours was saved yet; look at both and save again.`, { theirs: asTheyAre(ticket) })
     const isAssignee = ticket.assigneeId !== null && ticket.assigneeId === actor.userId
     const assigneeId = wants.assigneeId !== undefined ? wants.assigneeId : ticket.assigneeId
     if (wants.state) {
@@ -43,21 +46,26 @@ export async function changeTicket(db: Knex, actor: Actor, id: number, input: Ch
     }
     const beyondState = Object.keys(wants).some(key => key !== 'state' && key !== 'workDoneAt')
     if (beyondState && !atLeast(actor.role, 'engineer')) throw new Refusal(403, 'not_allowed', 'Title, priority, due date and assignee are changed by an engineer.')
-    if (wants.assigneeId) {
-      const person = await findUser(trx, wants.assigneeId)
-      if (!person || person.disabledAt || !atLeast(person.role, 'technician')) throw new Refusal(422, 'invalid_input', 'This person cannot take a ticket.', { issues: [{ path: 'assigneeId', message: 'not a technician or engineer' }] })
-    }
+    if (wants.assigneeId) await requireAssignee(trx, wants.assigneeId)
+    if (wants.assigneeId === null && ['inWork', 'toVerify'].includes(wants.state ?? ticket.state)) throw new Refusal(422, 'needs_assignee', 'Somebody has to hold a ticket that is being worked on. Give it to another person, or put it back to open.')
+    if (wants.workDoneAt && wants.workDoneAt > new Date()) throw new Refusal(422, 'invalid_input', 'The work cannot have been done in the future.', { issues: [{ path: 'workDoneAt', message: 'lies ahead' }] })
+    const at = writtenAt(input.at ? new Date(input.at) : undefined)
     const change: TicketChange = { ...wants }
     if (wants.assigneeId && ticket.state === 'open' && !wants.state) change.state = 'assigned'
     if (wants.assigneeId === null && ticket.state === 'assigned' && !wants.state) change.state = 'open'
-    if (change.state === 'toVerify' && !change.workDoneAt) change.workDoneAt = new Date()
+    if (change.state === 'open') change.assigneeId = null
+    if (change.state === 'toVerify' && !change.workDoneAt) change.workDoneAt = at
     await updateTicket(trx, id, change)
-    await insertTicketEvent(trx, { ticketId: id, userId: actor.userId, actor: actor.name, kind: change.state ? 'moved' : 'changed', text: input.reason ?? null, data: described(ticket, change) })
+    await insertTicketEvent(trx, { ticketId: id, userId: actor.userId, actor: actor.name, kind: change.state ? 'moved' : 'changed', text: input.reason ?? null, data: described(ticket, change), at })
     await insertAudit(trx, { userId: actor.userId, actor: actor.name, action: change.state ? `ticket.${change.state}` : 'ticket.change', entity: 'ticket', entityId: id, data: described(ticket, change) })
     if (change.assigneeId && change.assigneeId !== ticket.assigneeId) await notifyAssignment(trx, { ticketId: id, title: change.title ?? ticket.title, assigneeId: change.assigneeId, by: actor })
     if (change.state === 'toVerify') await notifyHandBack(trx, { ticketId: id, title: ticket.title, openedBy: ticket.openedBy, by: actor })
+    if (ticket.state === 'toVerify' && change.state === 'inWork') await notifySentBack(trx, { ticketId: id, title: ticket.title, assigneeId, reason: input.reason ?? '', by: actor })
   })
 }
+
+/** What a person needs to see when somebody was quicker. */
+const asTheyAre = ({ version, state, title, priority, dueOn, assigneeId, assignee, updatedAt }: TicketRow) => ({ version, state, title, priority, dueOn, assigneeId, assignee, updatedAt })
 
 /** What really differs from the ticket as it is. */
 function wanted(ticket: TicketRow, input: ChangeTicketInput): TicketChange {

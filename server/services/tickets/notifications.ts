@@ -29,6 +29,17 @@ export async function notifyHandBack(trx: Database, { ticketId, title, openedBy,
   }
 }
 
+/** Back from verification to the person who did the work. */
+export async function notifySentBack(trx: Database, { ticketId, title, assigneeId, reason, by }: { ticketId: number, title: string, assigneeId: number | null, reason: string, by: Actor }): Promise<void> {
+  if (assigneeId === null || assigneeId === by.userId) return
+  const count = await countTicketEvents(trx, ticketId)
+  await send(trx, assigneeId, 'handBack', { key: `sentBack-${ticketId}-${assigneeId}-${count}`, subject: `Ticket ${ticketId} is back with you: ${title}`, text: `${by.name} sent ticket ${ticketId} back to work.\n${title}\n\n${reason}\n\n${link(ticketId)}` })
+}
+
+export async function notifyOverdue(trx: Database, { ticketId, title, dueOn, userId }: { ticketId: number, title: string, dueOn: string, userId: number }): Promise<void> {
+  await send(trx, userId, 'overdue', { key: `overdue-${ticketId}-${dueOn}-${userId}`, subject: `Ticket ${ticketId} is overdue: ${title}`, text: `Ticket ${ticketId} was due on ${dueOn} and is not done.\n${title}\n\n${link(ticketId)}` })
+}
+
 export async function notifySlideBack(trx: Database, { ticketId, followUpId, title, people }: { ticketId: number, followUpId: number, title: string, people: number[] }): Promise<void> {
   for (const userId of new Set(people)) {
     await send(trx, userId, 'handBack', { key: `slideBack-${ticketId}-${userId}`, subject: `Slid back after ticket ${ticketId}: ${title}`, text: `A loop of ticket ${ticketId}, which you closed or worked on, has become worse again. Ticket ${followUpId} was opened as a follow-up.\n\n${link(followUpId)}` })
