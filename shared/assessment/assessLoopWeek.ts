@@ -40,6 +40,9 @@ export interface AssessOptions {
 
 /** Below this the record holds too little to look for patterns. */
 const LEAST_SAMPLES = 64
+/** The stretch on which shape and valve are judged. */
+const MOST_CYCLES = 90
+const MOST_SAMPLES = 4000
 
 /**
  * @param record samples of one loop; those outside the week are ignored
@@ -47,6 +50,8 @@ const LEAST_SAMPLES = 64
  * @throws RangeError on a set-up that contradicts itself, or time stamps that do not ascend
  */
 export function assessLoopWeek(record: LoopRecord, setup: LoopSetup, week: WeekFrame, outages: TimeSpan[], options: AssessOptions = {}): LoopWeekAssessment {
+  if (!(setup.settlingS > 0)) throw new RangeError(`settlingS must be above 0, got ${setup.settlingS}`)
+  if (!(setup.tolerance > 0)) throw new RangeError(`tolerance must be above 0, got ${setup.tolerance}`)
   const prepared = prepareRecord(record, setup, week)
   const { n, flags, intervalS } = prepared
   const pvSpan = setup.pvHigh - setup.pvLow
@@ -78,7 +83,8 @@ export function assessLoopWeek(record: LoopRecord, setup: LoopSetup, week: WeekF
 
   // the stretch on which shape and valve are judged: an episode inside one segment, else the longest segment
   const home = hunting?.series ?? null
-  const stretch = home && (strongest ? longestEpisode(home, strongest) ?? longestSegment(home) : longestSegment(home))
+  const whole = home && (strongest ? longestEpisode(home, strongest) ?? longestSegment(home) : longestSegment(home))
+  const stretch = whole && middleOfStretch(whole, strongest ? Math.ceil(MOST_CYCLES * strongest.periodS / home!.intervalS) : MOST_SAMPLES)
   const y = home && stretch ? home.error.slice(stretch.begin, stretch.end) : null
   // minus the error is PV without what the set point does
   if (y) for (let i = 0; i < y.length; i++) y[i] = -y[i]
@@ -91,7 +97,7 @@ export function assessLoopWeek(record: LoopRecord, setup: LoopSetup, week: WeekF
   const stick = y && u && character && !panelSilent ? stickFit(y, u, processSign, (3 * (strongest?.periodS ?? 2 * character.staySideS)) / home!.intervalS) : null
   const panel = valvePanel(y, u, period, setup.type, opSpan, stick, panelSilent)
   const shape = y && period !== null && period >= 4 && y.length >= 6 * period ? cycleShape(y, u, period) : null
-  const halves = enough && character && character.deviation > 0 ? halfCycles(series, 0.7 * character.deviation) : null
+  const halves = enough && character && character.deviation > 0 ? halfCycles(series, 0.7 * character.deviation, false) : null
   const upsets = enough ? recoveries(series, setup.settlingS, noise / Math.sqrt(series.factor), processSign, pvSpan) : null
   const responses = explainResponses(explain, enough ? series : null, setup, activity.kind, noise, upsets)
   const benchmarkByHorizon = explainBenchmark(explain, series, setup, compression)
@@ -216,6 +222,13 @@ interface Stretch { begin: number, end: number }
 
 function longestSegment(series: AnalysisSeries): Stretch | null {
   return series.segments.reduce<Stretch | null>((a, b) => (a && a.end - a.begin >= b.end - b.begin ? a : b), null)
+}
+
+/** At most `most` samples from the middle: more cycles add cost, hardly knowledge. */
+function middleOfStretch(s: Stretch, most: number): Stretch {
+  const length = Math.min(s.end - s.begin, Math.max(64, Math.min(most, MOST_SAMPLES)))
+  const begin = s.begin + ((s.end - s.begin - length) >> 1)
+  return { begin, end: begin + length }
 }
 
 /** The longest piece of an episode inside one segment; null below six periods. */

@@ -35,7 +35,7 @@ export function rhythmOf(series: AnalysisSeries, settlingS: number, periodS?: nu
   const correlation: number[] = []
   for (let k = 0; k <= maxLag; k += stride) {
     lagS.push(k * intervalS)
-    correlation.push(Number(acf[k].toFixed(4)))
+    correlation.push(Number(acf[k].toFixed(4)) || 0)
   }
   const most = periodS ? 12 * Math.max(periodS, 4 * intervalS) / intervalS : 1024
   let length = 64

@@ -4,7 +4,7 @@ import { isInsufficient } from '../types'
 import type { Explainer } from './Explainer'
 import { sentence } from './sentence'
 
-const QUALITY_SAMPLES = 20_000
+const QUALITY_SAMPLES = 8000
 const COMPRESSION_LIMIT = 3
 
 /** A piece of at most QUALITY_SAMPLES from the middle: resolution and compression do not change within a week. */

@@ -24,9 +24,9 @@ export interface ErrorCharacter {
 export function errorCharacter(series: AnalysisSeries): ErrorCharacter | null {
   const longest = series.segments.reduce<{ begin: number, end: number } | null>((a, b) => (a && a.end - a.begin >= b.end - b.begin ? a : b), null)
   if (!longest || longest.end - longest.begin < 64) return null
-  const x = series.error.subarray(longest.begin, Math.min(longest.end, longest.begin + 30_000))
+  const x = series.error.subarray(longest.begin, Math.min(longest.end, longest.begin + 16_384))
   const n = x.length
-  const r = autocorrelation(x, Math.min(n - 1, Math.max(60, n >> 3)))
+  const r = autocorrelation(x, Math.min(n - 1, Math.max(60, Math.min(1500, n >> 3))))
   if (!(r[0] === r[0])) return null
   let k = 1
   while (k < r.length - 1 && r[k] > 1 / Math.E) k++

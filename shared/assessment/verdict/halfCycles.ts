@@ -29,8 +29,11 @@ export interface HalfCycles {
 const RUN = 12
 const LARGE_SHARE = 0.8
 
-/** @param least smallest peak that counts, PV unit, > 0 */
-export function halfCycles(series: AnalysisSeries, least: number): HalfCycles {
+/**
+ * @param least smallest peak that counts, PV unit, > 0
+ * @param withRuns false: only the figures over all large half-cycles
+ */
+export function halfCycles(series: AnalysisSeries, least: number, withRuns = true): HalfCycles {
   if (!(least > 0)) throw new RangeError(`halfCycles: least must be above 0, got ${least}`)
   const lengths: number[] = []
   const peaks: number[] = []
@@ -65,7 +68,7 @@ export function halfCycles(series: AnalysisSeries, least: number): HalfCycles {
     }
     // longest alike runs, greedily from the left
     let a = 0
-    while (a + RUN <= halves.length) {
+    while (withRuns && a + RUN <= halves.length) {
       if (halves[a].peak < least || !alike(halves, a, a + RUN, least)) {
         a++
         continue
@@ -78,30 +81,48 @@ export function halfCycles(series: AnalysisSeries, least: number): HalfCycles {
     }
   }
   const enough = lengths.length >= RUN
+  const sortedLengths = Float64Array.from(lengths).sort()
+  const sortedPeaks = Float64Array.from(peaks).sort()
   return {
     count: lengths.length,
     inRuns,
-    lengthVariation: enough ? spread(lengths) : NaN,
-    peakVariation: enough ? spread(peaks) : NaN,
-    periodS: enough ? 2 * quantile(lengths, 0.5) * series.intervalS : NaN,
-    amplitude: enough ? quantile(peaks, 0.5) : NaN,
+    lengthVariation: enough ? spreadSorted(sortedLengths) : NaN,
+    peakVariation: enough ? spreadSorted(sortedPeaks) : NaN,
+    periodS: enough ? 2 * quantileSorted(sortedLengths, 0.5) * series.intervalS : NaN,
+    amplitude: enough ? quantileSorted(sortedPeaks, 0.5) : NaN,
     runs,
   }
 }
+
+const lengthOf = new Float64Array(RUN)
+const peakOf = new Float64Array(RUN)
 
 function alike(halves: { from: number, to: number, peak: number }[], from: number, to: number, least: number): boolean {
   let large = 0
   for (let i = from; i < to; i++) if (halves[i].peak >= least) large++
   if (large < LARGE_SHARE * (to - from)) return false
-  const part = halves.slice(from, to)
-  return spread(part.map(h => h.to - h.from)) < 0.5 && spread(part.map(h => h.peak)) < 0.45
+  for (let i = from; i < to; i++) {
+    insert(lengthOf, i - from, halves[i].to - halves[i].from)
+    insert(peakOf, i - from, halves[i].peak)
+  }
+  return spreadSorted(lengthOf) < 0.5 && spreadSorted(peakOf) < 0.45
 }
 
-function quantile(values: number[], f: number): number {
-  const s = [...values].sort((a, b) => a - b)
+/** Insertion into the ascending first `count` values. */
+function insert(a: Float64Array, count: number, x: number): void {
+  let k = count
+  while (k > 0 && a[k - 1] > x) {
+    a[k] = a[k - 1]
+    k--
+  }
+  a[k] = x
+}
+
+function quantileSorted(s: Float64Array, f: number): number {
   return s[Math.round(f * (s.length - 1))]
 }
 
-function spread(values: number[]): number {
-  return (quantile(values, 0.84) - quantile(values, 0.16)) / 2 / quantile(values, 0.5)
+/** Half the width from 16 to 84 % over the median: the coefficient of variation of a normal sample, deaf to outliers. */
+function spreadSorted(s: Float64Array): number {
+  return (quantileSorted(s, 0.84) - quantileSorted(s, 0.16)) / 2 / quantileSorted(s, 0.5)
 }
