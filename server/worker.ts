@@ -2,6 +2,7 @@ import { openDatabase } from '../db/knex'
 import { WORKER_NAME } from '../db/repositories/health'
 import { readEnvironment } from './services/environment'
 import { sendDueDigest } from './services/digest/sendDueDigest'
+import { remindOverdue } from './services/tickets/remindOverdue'
 import { startImports } from './worker/imports'
 import { startMail } from './worker/mail'
 import { every } from './worker/every'
@@ -13,6 +14,7 @@ const db = openDatabase(environment.DATABASE_URL, { name: WORKER_NAME })
 const stops = [
   await startMail(db, environment),
   await startImports(db, environment),
+  every(60_000, 'Overdue tickets', () => remindOverdue(db, new Date())),
   every(60_000, 'Digest', () => sendDueDigest(db, { publicUrl: environment.PUBLIC_URL, now: new Date() })),
 ]
 

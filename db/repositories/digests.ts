@@ -9,7 +9,7 @@ export async function listDigestLoops(db: Database, week: string, weekBefore: st
     .where('w.week', week)
     .whereNotExists(db('set_asides as s').whereRaw('s.loop_id = l.id').whereNull('s.ended_at').whereRaw('s.until_at > now()'))
     .whereNotExists(db('shelvings as s').whereRaw('s.loop_id = l.id').whereNull('s.ended_at').whereRaw('s.until_at > now()'))
-    .select('l.tag', 'l.description', 'a.name as area', 'w.ribbon', 'w.lost_hours', 'w.verdict', 'w.confidence', 'w.hours', 'p.lost_hours as lost_before', 'p.verdict as verdict_before', 'l.priority')
+    .select('l.tag', 'l.description', 'a.name as area', 'w.ribbon', 'w.lost_hours', 'w.verdict', 'w.confidence', 'w.hours', 'p.lost_hours as lost_before', 'p.verdict as verdict_before')
     .orderBy([{ column: 'w.weighted_lost_hours', order: 'desc' }, { column: 'l.tag' }])
   if (areaIds.length) query.whereIn('l.area_id', areaIds)
   const rows = await query
@@ -19,9 +19,11 @@ export async function listDigestLoops(db: Database, week: string, weekBefore: st
   }))
 }
 
-export async function listDigestGroups(db: Database, week: string): Promise<DigestModel['groups']> {
-  const rows = await db('loop_groups as g').leftJoin('loops as l', 'l.id', 'g.likely_source').where('g.week', week).orderBy('g.letter')
+export async function listDigestGroups(db: Database, week: string, areaIds: number[]): Promise<DigestModel['groups']> {
+  const query = db('loop_groups as g').leftJoin('loops as l', 'l.id', 'g.likely_source').where('g.week', week).orderBy('g.letter')
     .select('g.letter', 'g.period_s', 'l.tag', db.raw('(select count(*)::int from loop_group_members m where m.group_id = g.id) as members'))
+  if (areaIds.length) query.whereExists(db('loop_group_members as x').join('loops as y', 'y.id', 'x.loop_id').whereRaw('x.group_id = g.id').whereIn('y.area_id', areaIds))
+  const rows = await query
   return rows.map(r => ({ letter: r.letter, periodS: r.period_s, members: r.members, source: r.tag ?? null }))
 }
 
@@ -32,15 +34,34 @@ export async function listDigestTickets(db: Database, areaIds: number[], today: 
   return (await query).map(r => ({ id: r.id, title: r.title, state: r.state, dueOn: r.due_on, assignee: r.assignee ?? null, overdue: r.due_on < today }))
 }
 
-/** Tickets closed in [from, to) on a proof that the loop is better. */
+/** Tickets closed in [from, to) on a proof that the loop is better, or whose proof became final then. */
 export async function listDigestWins(db: Database, areaIds: number[], from: Date, to: Date): Promise<DigestModel['wins']> {
-  const query = db('tickets as t').where('t.state', 'closed').where('t.closed_at', '>=', from).where('t.closed_at', '<', to).whereRaw('t.proof->>\'verdict\' = \'better\'').orderBy('t.id')
+  const query = db('tickets as t').where('t.state', 'closed').where(b => b.whereBetween('t.closed_at', [from, new Date(to.getTime() - 1)]).orWhereBetween('t.proof_final_at', [from, new Date(to.getTime() - 1)])).whereRaw('t.proof->>\'verdict\' = \'better\'').orderBy('t.id')
     .select('t.id', 't.title', 't.outcome', 't.proof', 't.proof_final')
   if (areaIds.length) query.whereExists(db('ticket_loops as x').join('loops as y', 'y.id', 'x.loop_id').whereRaw('x.ticket_id = t.id').whereIn('y.area_id', areaIds))
   return (await query).map(r => ({
     ticketId: r.id, title: r.title, outcome: r.outcome, provisional: !r.proof_final,
     hoursPerWeek: (r.proof.loops as { verdict: string, lostHoursWonPerWeek: { value: number } | null }[]).filter(p => p.verdict === 'better').reduce((sum, p) => sum + (p.lostHoursWonPerWeek?.value ?? 0), 0),
   }))
+}
+
+/** Follow-ups opened in [from, to) because a closed ticket's loop slid back. */
+export async function listDigestSlideBacks(db: Database, areaIds: number[], from: Date, to: Date): Promise<DigestModel['slidBack']> {
+  const query = db('tickets as t').whereNotNull('t.follow_up_of').where('t.created_at', '>=', from).where('t.created_at', '<', to).orderBy('t.id').select('t.id', 't.follow_up_of', 't.title')
+  if (areaIds.length) query.whereExists(db('ticket_loops as x').join('loops as y', 'y.id', 'x.loop_id').whereRaw('x.ticket_id = t.id').whereIn('y.area_id', areaIds))
+  return (await query).map(r => ({ ticketId: r.follow_up_of, followUpId: r.id, title: r.title }))
+}
+
+/** Whether loop-weeks of this week still wait to be assessed, and how many are. */
+export async function readDigestReadiness(db: Database, week: string): Promise<{ waiting: boolean, assessed: boolean }> {
+  const [due, weeksDue, assessed] = await Promise.all([db('assessments_due').where({ week }).first('loop_id'), db('weeks_due').where({ week }).first('week'), db('loop_weeks').where({ week }).first('loop_id')])
+  return { waiting: Boolean(due || weeksDue), assessed: Boolean(assessed) }
+}
+
+/** Holds off other senders of the digest until the transaction ends; false: another one is at it. */
+export async function lockDigest(trx: Database, week: string): Promise<boolean> {
+  const { rows } = await trx.raw('select pg_try_advisory_xact_lock(hashtext(?)) as mine', [`digest ${week}`])
+  return rows[0].mine
 }
 
 export interface Subscriber { userId: number, email: string, name: string, areaIds: number[], unsubscribeToken: string }
@@ -61,9 +82,9 @@ export async function saveSubscription(db: Database, s: { userId: number, active
     .onConflict('user_id').merge({ active: s.active, area_ids: s.areaIds, updated_at: db.fn.now() })
 }
 
-/** Ends the subscription of a token; false when no such token exists. Saying it twice changes nothing. */
-export async function endSubscription(db: Database, token: string): Promise<boolean> {
-  return await db('digest_subscriptions').where({ unsubscribe_token: token }).update({ active: false, updated_at: db.fn.now() }) > 0
+/** Ends the subscription of a token and answers whose it was; null when no such token exists. Saying it twice changes nothing. */
+export async function endSubscription(db: Database, token: string): Promise<number | null> {
+  return (await db('digest_subscriptions').where({ unsubscribe_token: token }).update({ active: false, updated_at: db.fn.now() }).returning('user_id'))[0]?.user_id ?? null
 }
 
 export async function findDigest(db: Database, week: string): Promise<{ week: string, dueAt: Date, madeAt: Date | null, recipients: number } | null> {

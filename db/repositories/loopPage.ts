@@ -57,6 +57,9 @@ export async function findShelving(db: Database, loopId: number, now: Date): Pro
   const r = await db('shelvings as s').leftJoin('users as u', 'u.id', 's.created_by').where('s.loop_id', loopId).whereNull('s.ended_at').where('s.until_at', '>', now).orderBy('s.id', 'desc').first('s.id', 's.until_at', 's.reason', 'u.name')
   return r ? { id: r.id, untilAt: r.until_at, reason: r.reason, by: r.name } : null
 }
+export async function listShelvedLoopIds(db: Database, now: Date): Promise<number[]> {
+  return (await db('shelvings').whereNull('ended_at').where('until_at', '>', now).distinct('loop_id')).map(r => Number(r.loop_id))
+}
 export async function insertShelving(trx: Database, s: { loopId: number, untilAt: Date, reason: string, userId: number | null }): Promise<void> {
   await trx('shelvings').insert({ loop_id: s.loopId, until_at: s.untilAt, reason: s.reason, created_by: s.userId })
 }

@@ -138,8 +138,11 @@ export async function listWatchers(db: Database, ticketId: number): Promise<{ id
 export interface TicketFile { id: number, ticketId: number, key: string, name: string, mediaType: string, bytes: number, createdAt: Date }
 const toFile = (r: Record<string, any>): TicketFile => ({ id: r.id, ticketId: r.ticket_id, key: r.file_key, name: r.name, mediaType: r.media_type, bytes: r.bytes, createdAt: r.created_at })
 
-/** null when a file with this idempotency key is there already. */
-export async function insertTicketFile(trx: Database, f: { ticketId: number, key: string, name: string, mediaType: string, bytes: number, userId: number | null, idempotencyKey: string | null }): Promise<number | null> {
+/** null when a file with this idempotency key is there already, or the ticket holds as many files as it may. */
+export async function insertTicketFile(trx: Database, f: { ticketId: number, key: string, name: string, mediaType: string, bytes: number, userId: number | null, idempotencyKey: string | null, most: number }): Promise<number | null> {
+  await trx('tickets').where({ id: f.ticketId }).forUpdate().first('id')
+  const held = await trx('ticket_files').where({ ticket_id: f.ticketId }).count({ count: '*' }).first()
+  if (Number(held?.count ?? 0) >= f.most) return null
   const rows = await trx('ticket_files').insert({ ticket_id: f.ticketId, file_key: f.key, name: f.name, media_type: f.mediaType, bytes: f.bytes, user_id: f.userId, idempotency_key: f.idempotencyKey })
     .onConflict(trx.raw('(ticket_id, idempotency_key) where idempotency_key is not null') as never).ignore().returning('id')
   return rows[0]?.id ?? null

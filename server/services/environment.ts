@@ -12,6 +12,12 @@ const schema = z.object({
   ADMIN_EMAIL: z.email('must be an e-mail address').optional(),
   ADMIN_PASSWORD: z.string().min(12, 'must have at least 12 characters').optional(),
   UPLOAD_LIMIT_BYTES: z.coerce.number().int().positive().default(20 * 1024 ** 3),
+  // photos and files of tickets: a bucket of any S3-compatible service instead of DATA_DIR/files
+  FILES_S3_BUCKET: z.string().min(1).optional(),
+  FILES_S3_ENDPOINT: z.url('must be an address such as https://s3.site.example').optional(),
+  FILES_S3_REGION: z.string().min(1).default('auto'),
+  FILES_S3_KEY: z.string().min(1).optional(),
+  FILES_S3_SECRET: z.string().min(1).optional(),
   WORKER_THREADS: z.coerce.number().int().min(1).max(64).optional(),
 })
 
@@ -29,5 +35,6 @@ export function readEnvironment(source: Record<string, string | undefined>): Env
     throw new Error(`Setting not usable: ${lines.join('; ')}.`)
   }
   const values = result.data
+  if (values.FILES_S3_BUCKET && !(values.FILES_S3_ENDPOINT && values.FILES_S3_KEY && values.FILES_S3_SECRET)) throw new Error('Setting not usable: FILES_S3_BUCKET needs FILES_S3_ENDPOINT, FILES_S3_KEY and FILES_S3_SECRET beside it.')
   return { ...values, PUBLIC_URL: (values.PUBLIC_URL ?? `http://${values.HOST}:${values.PORT}`).replace(/\/$/, '') }
 }

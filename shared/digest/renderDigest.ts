@@ -4,6 +4,7 @@ import { formatWeek } from '../format/date'
 import { VERDICT_WORDS } from '../format/words'
 import { coarseCells } from '../ribbon/coarseCells'
 import { STATE_COLOURS } from '../ribbon/colours'
+import { OUTCOME_WORDS, STATE_WORDS } from '../types/tickets'
 import type { DigestLoop, DigestModel } from './model'
 
 const escape = (text: string) => text.replace(/&/g, '&amp;').replace(/</g, '&lt;').replace(/>/g, '&gt;').replace(/"/g, '&quot;')
@@ -33,9 +34,10 @@ const plural = (n: number, one: string, many = `${one}s`) => `${n} ${n === 1 ? o
 export function digestSentence(m: DigestModel): string {
   const where = m.areas.length ? ` in ${m.areas.join(', ')}` : ''
   if (m.loops === 0) return `No loop was assessed${where} in this week.`
-  const change = m.lostHoursBefore === null ? '' : m.lostHours === m.lostHoursBefore ? ', as many as the week before' : `, ${Math.abs(m.lostHours - m.lostHoursBefore)} ${m.lostHours < m.lostHoursBefore ? 'fewer' : 'more'} than the week before`
+  const change = m.change === null ? '' : m.change === 0 ? ', as many as the week before' : `, ${Math.abs(m.change)} ${m.change < 0 ? 'fewer' : 'more'} than the week before`
   const most = m.byState.filter(s => s.hours > 0).sort((a, b) => b.hours - a.hours)[0]
   const mostly = most ? `; most of them (${most.hours}) to ${stateWords[most.state] ?? most.state}` : ''
+  if (m.lostHours === 0) return `${plural(m.loops, 'loop')}${where} lost no hour${change}.`
   return `${plural(m.loops, 'loop')}${where} lost ${m.lostHours} loop-hours${change}${mostly}.`
 }
 
@@ -45,6 +47,9 @@ function loopTextLine(l: DigestLoop): string {
   const sure = l.confidence === null ? '' : ` (${Math.round(l.confidence * 100)} % sure)`
   return `  ${l.tag}  ${l.lostHours} h lost${l.change === null ? '' : ` (${signed(l.change)})`}  ${VERDICT_WORDS[l.verdict]}${sure}\n    ${[l.description, l.area].filter(Boolean).join(', ')}\n    ${coarseLetters(l.ribbon)}`
 }
+
+// Programs that know dark mode get colours of ours; all others keep the light ones, or turn both sides of a pair.
+const DARK = '@media (prefers-color-scheme:dark){.b{background:#14181B!important}.p{background:#1C2226!important;color:#E6E9EA!important}.p h1{color:#E6E9EA!important}.q,.p h2{color:#9AA6AE!important}.a{color:#6FC3C9!important}.l{border-color:#313A40!important}}'
 
 const INK = '#1D2329'
 const QUIET = '#57616A'
@@ -56,8 +61,9 @@ export function renderDigest(m: DigestModel, unsubscribeUrl: string): RenderedDi
   const sentence = digestSentence(m)
   const url = (path: string) => `${m.publicUrl}${path}`
   const loopsUrl = url(`/loops?week=${m.week}`)
-  const due = m.tickets.map(t => `#${t.id} ${t.title}, ${t.state}${t.dueOn ? `, due ${t.dueOn}${t.overdue ? ' (overdue)' : ''}` : ''}${t.assignee ? `, ${t.assignee}` : ''}`)
-  const wins = m.wins.map(w => `#${w.ticketId} ${w.title}: ${w.hoursPerWeek.toFixed(0)} h a week won back (${w.outcome}${w.provisional ? ', provisional' : ''})`)
+  const due = m.tickets.map(t => ({ id: t.id, line: `T-${t.id} ${t.title}, ${STATE_WORDS[t.state]}${t.dueOn ? `, due ${t.dueOn}${t.overdue ? ' (overdue)' : ''}` : ''}${t.assignee ? `, ${t.assignee}` : ''}` }))
+  const wins = m.wins.map(w => ({ id: w.ticketId, line: `T-${w.ticketId} ${w.title}: ${w.hoursPerWeek.toFixed(0)} h a week won back (${w.outcome ? OUTCOME_WORDS[w.outcome] : 'closed'}${w.provisional ? ', provisional' : ''})` }))
+  const slid = m.slidBack.map(b => ({ id: b.followUpId, line: `T-${b.followUpId} ${b.title}` }))
   const groups = m.groups.map(g => `Group ${g.letter}: ${g.members} loops hunt together with a period of ${formatDuration(g.periodS)}${g.source ? `; the likely source is ${g.source}` : ''}.`)
 
   const text = [
@@ -65,27 +71,30 @@ export function renderDigest(m: DigestModel, unsubscribeUrl: string): RenderedDi
     ...(m.worst.length ? ['New or worse', ...m.worst.map(loopTextLine), '  h hunting  o off target  m manual  u at a limit  x sensor  s steady  d down  . no data', ''] : ['No loop became worse.', '']),
     ...(m.better.length ? ['Better than the week before', ...m.better.map(loopTextLine), ''] : []),
     ...(groups.length ? ['Hunting together', ...groups.map(g => `  ${g}`), ''] : []),
-    ...(due.length ? ['Tickets due', ...due.map(t => `  ${t}`), ''] : []),
-    ...(wins.length ? ['Proven', ...wins.map(w => `  ${w}`), ''] : []),
-    `All loops: ${loopsUrl}`, '', `You get this mail because you follow ${m.areas.length ? m.areas.join(', ') : 'all areas'}. To stop it: ${unsubscribeUrl}`, '',
+    ...(due.length ? ['Tickets due', ...due.map(t => `  ${t.line}`), ''] : []),
+    ...(wins.length ? ['Proven', ...wins.map(w => `  ${w.line}`), ''] : []),
+    ...(slid.length ? ['Slid back', ...slid.map(b => `  ${b.line}`), ''] : []),
+    `All loops: ${loopsUrl}`, `Tickets: ${url('/tickets')}`, '', `You get this mail because you follow ${m.areas.length ? m.areas.join(', ') : 'all areas'}. To stop it: ${unsubscribeUrl}`, '',
   ].join('\n')
 
   const heading = (words: string) => `<h2 style="font:600 14px/20px Arial,sans-serif;color:${QUIET};margin:22px 0 6px">${words}</h2>`
-  const loopRow = (l: DigestLoop) => `<tr><td style="padding:6px 10px 6px 0;border-top:1px solid #DAD8D2;vertical-align:top"><a href="${escape(url(`/loops/${encodeURIComponent(l.tag)}?week=${m.week}`))}" style="color:#0F5C63;font-weight:bold;text-decoration:none;white-space:nowrap">${escape(l.tag)}</a><br><span style="color:${QUIET};font-size:12px">${escape(l.description)}</span></td><td style="padding:8px 10px 6px 0;border-top:1px solid #DAD8D2;vertical-align:top">${ribbonCells(l.ribbon)}<span style="font-size:12px;color:${QUIET}">${escape(VERDICT_WORDS[l.verdict])}${l.confidence === null ? '' : `, ${Math.round(l.confidence * 100)} % sure`}</span></td><td align="right" style="padding:6px 0;border-top:1px solid #DAD8D2;vertical-align:top;white-space:nowrap"><b>${l.lostHours} h</b><br><span style="color:${QUIET};font-size:12px">${l.change === null ? '' : signed(l.change)}</span></td></tr>`
+  const loopRow = (l: DigestLoop) => `<tr><td class="l" style="padding:6px 10px 6px 0;border-top:1px solid #DAD8D2;vertical-align:top"><a class="a" href="${escape(url(`/loops/${encodeURIComponent(l.tag)}?week=${m.week}`))}" style="color:#0F5C63;font-weight:bold;text-decoration:none;white-space:nowrap">${escape(l.tag)}</a><br><span class="q" style="color:${QUIET};font-size:12px">${escape(l.description)}</span></td><td class="l" style="padding:8px 10px 6px 0;border-top:1px solid #DAD8D2;vertical-align:top">${ribbonCells(l.ribbon)}<span class="q" style="font-size:12px;color:${QUIET}">${escape(VERDICT_WORDS[l.verdict])}${l.confidence === null ? '' : `, ${Math.round(l.confidence * 100)} % sure`}</span></td><td class="l" align="right" style="padding:6px 0;border-top:1px solid #DAD8D2;vertical-align:top;white-space:nowrap"><b>${l.lostHours} h</b><br><span class="q" style="color:${QUIET};font-size:12px">${l.change === null ? '' : signed(l.change)}</span></td></tr>`
   const table = (loops: DigestLoop[]) => `<table role="presentation" width="100%" cellpadding="0" cellspacing="0" style="border-collapse:collapse">${loops.map(loopRow).join('')}</table>`
   const list = (lines: string[]) => lines.map(line => `<p style="margin:0 0 6px">${escape(line)}</p>`).join('')
-  const html = `<!doctype html><html lang="en"><head><meta charset="utf-8"><meta name="viewport" content="width=device-width"><meta name="color-scheme" content="light dark"><title>${escape(m.siteName)}</title></head>
-<body style="margin:0;background:#F6F5F2"><div style="max-width:640px;margin:0 auto;padding:20px;background:#FFFFFF;color:${INK};font:14px/20px Arial,sans-serif">
-<p style="margin:0;color:${QUIET}">${escape(m.siteName)}, ${escape(formatWeek(m.week))}</p>
+  const ticketList = (lines: { id: number, line: string }[]) => lines.map(({ id, line }) => `<p style="margin:0 0 6px"><a class="a" href="${escape(url(`/tickets/${id}`))}" style="color:#0F5C63;font-weight:bold;text-decoration:none">T-${id}</a> ${escape(line.slice(`T-${id} `.length))}</p>`).join('')
+  const html = `<!doctype html><html lang="en"><head><meta charset="utf-8"><meta name="viewport" content="width=device-width"><meta name="color-scheme" content="light dark"><meta name="supported-color-schemes" content="light dark"><style>${DARK}</style><title>${escape(m.siteName)}</title></head>
+<body class="b" style="margin:0;background:#F6F5F2"><div class="p" style="max-width:640px;margin:0 auto;padding:20px;background:#FFFFFF;color:${INK};font:14px/20px Arial,sans-serif">
+<p class="q" style="margin:0;color:${QUIET}">${escape(m.siteName)}, ${escape(formatWeek(m.week))}</p>
 <h1 style="font:600 20px/28px Arial,sans-serif;margin:6px 0 10px;color:${INK}">${escape(sentence)}</h1>
 ${m.worst.length ? heading('New or worse') + table(m.worst) : '<p>No loop became worse.</p>'}
 ${m.better.length ? heading('Better than the week before') + table(m.better) : ''}
-<p style="color:${QUIET};font-size:12px;margin:8px 0 0">Each strip is a week in quarters of a day: h hunting, o off target, m manual, u at a limit, x sensor, blank steady, × down, · no data.</p>
+<p class="q" style="color:${QUIET};font-size:12px;margin:8px 0 0">Each strip is a week in quarters of a day: h hunting, o off target, m manual, u at a limit, x doubtful sensor, blank steady, × down, · no data.</p>
 ${groups.length ? heading('Hunting together') + list(groups) : ''}
-${due.length ? heading('Tickets due') + list(due) : ''}
-${wins.length ? heading('Proven') + list(wins) : ''}
-<p style="margin:22px 0 0"><a href="${escape(loopsUrl)}" style="color:#0F5C63">All loops of the week</a></p>
-<p style="margin:18px 0 0;color:${QUIET};font-size:12px">You get this mail because you follow ${escape(m.areas.length ? m.areas.join(', ') : 'all areas')}. <a href="${escape(unsubscribeUrl)}" style="color:${QUIET}">Stop it</a>.</p>
+${due.length ? heading('Tickets due') + ticketList(due) : ''}
+${wins.length ? heading('Proven') + ticketList(wins) : ''}
+${slid.length ? heading('Slid back') + ticketList(slid) : ''}
+<p style="margin:22px 0 0"><a class="a" href="${escape(loopsUrl)}" style="color:#0F5C63">All loops of the week</a></p>
+<p class="q" style="margin:18px 0 0;color:${QUIET};font-size:12px">You get this mail because you follow ${escape(m.areas.length ? m.areas.join(', ') : 'all areas')}. <a href="${escape(unsubscribeUrl)}" class="q" style="color:${QUIET}">Stop it</a>.</p>
 </div></body></html>`
-  return { subject: `${m.siteName}, week ${Number(m.week.slice(6))}: ${m.lostHours} loop-hours lost${m.lostHoursBefore === null ? '' : ` (${signed(m.lostHours - m.lostHoursBefore)})`}`, text, html }
+  return { subject: `${m.siteName}, week ${Number(m.week.slice(6))}: ${m.lostHours} loop-hours lost${m.change === null ? '' : ` (${signed(m.change)})`}`, text, html }
 }

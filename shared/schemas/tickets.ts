@@ -67,3 +67,6 @@ export const listTicketsSchema = z.object({
 })
 
 export const ticketIdSchema = z.object({ id: z.coerce.number().int().positive() })
+
+export const ticketFileSchema = ticketIdSchema.extend({ fileId: z.coerce.number().int().positive() })
+export const fileKeySchema = idempotencyKey

@@ -25,12 +25,13 @@ describe('digestDueAt', () => {
 })
 
 const model: DigestModel = {
-  siteName: 'Tarn Hollow Tileworks', week: '2026-W48', zone: 'Europe/London', areas: [], loops: 238, lostHours: 531, lostHoursBefore: 578,
+  siteName: 'Tarn Hollow Tileworks', week: '2026-W48', zone: 'Europe/London', areas: [], loops: 238, lostHours: 531, change: -47,
   byState: [{ state: 'hunting', hours: 212 }, { state: 'manual', hours: 118 }],
   worst: [{ tag: 'FIC-2107', description: 'Mill <feed> water', area: 'Glaze preparation', ribbon: 'h'.repeat(168), lostHours: 63, change: 15, verdict: 'huntingValve', confidence: 0.86 }],
   better: [], groups: [{ letter: 'A', periodS: 2280, members: 9, source: 'FIC-2107' }],
   tickets: [{ id: 12, title: 'PIC-4002 runs against its limit', state: 'inWork', dueOn: '2026-11-27', assignee: 'T. Technician', overdue: true }],
   wins: [{ ticketId: 7, title: 'TIC-1204 hunts', hoursPerWeek: 41.4, provisional: true, outcome: 'retuned' }],
+  slidBack: [{ ticketId: 5, followUpId: 14, title: 'LIC-3001 slid back after ticket 5' }],
   publicUrl: 'https://fettle.example',
 }
 
@@ -42,7 +43,7 @@ describe('renderDigest', () => {
   })
   it('says the same in text and HTML, with links', () => {
     for (const body of [text, html]) {
-      for (const fact of ['FIC-2107', '63 h', 'PIC-4002', 'overdue', '41 h a week', 'provisional', '38 min', 'https://fettle.example/u/abcdefghijkl', 'https://fettle.example/loops?week=2026-W48']) expect(body).toContain(fact)
+      for (const fact of ['FIC-2107', '63 h', 'PIC-4002', 'overdue', '41 h a week', 'provisional', '38 min', 'in work', 'LIC-3001 slid back', 'https://fettle.example/u/abcdefghijkl', 'https://fettle.example/loops?week=2026-W48']) expect(body).toContain(fact)
     }
   })
   it('draws the ribbon in 28 plain table cells whose letters read without colour', () => {

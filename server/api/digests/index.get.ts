@@ -1,7 +1,6 @@
-import { listDigestMails, listSubscribers } from '../../../db/repositories/digests'
+import { digestOverview } from '../../services/digest/subscriptions'
 
 export default defineEventHandler(async (event) => {
   await requireRole(event, 'viewer')
-  const [mails, subscribers] = await Promise.all([listDigestMails(database()), listSubscribers(database())])
-  return { mails, subscribers: subscribers.map(({ unsubscribeToken: _, ...rest }) => rest) }
+  return digestOverview(database())
 })

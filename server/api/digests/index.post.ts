@@ -1,7 +1,8 @@
 import { z } from 'zod'
+import { weekSchema } from '../../../shared/schemas/tickets'
 import { sendDigest } from '../../services/digest/sendDigest'
 
-const body = z.object({ week: z.string().regex(/^\d{4}-W\d{2}$/) })
+const body = z.object({ week: weekSchema })
 
 export default defineEventHandler(async (event) => {
   const caller = await requireRole(event, 'engineer')

@@ -1,6 +1,6 @@
-import { findSubscription } from '../../../db/repositories/digests'
+import { readSubscription } from '../../services/digest/subscriptions'
 
 export default defineEventHandler(async (event) => {
   const { userId } = await requireRole(event, 'viewer')
-  return (await findSubscription(database(), userId!)) ?? { active: false, areaIds: [] }
+  return readSubscription(database(), userId!)
 })

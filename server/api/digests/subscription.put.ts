@@ -1,12 +1,9 @@
-import { randomBytes } from 'node:crypto'
 import { z } from 'zod'
-import { saveSubscription } from '../../../db/repositories/digests'
+import { changeSubscription } from '../../services/digest/subscriptions'
 
 const body = z.object({ active: z.boolean(), areaIds: z.array(z.number().int().positive()).max(500) })
 
 export default defineEventHandler(async (event) => {
-  const { userId } = await requireRole(event, 'viewer')
-  const input = await readInput(event, body)
-  await saveSubscription(database(), { userId: userId!, ...input, token: randomBytes(9).toString('base64url') })
-  return input
+  const { userId, name } = await requireRole(event, 'viewer')
+  return changeSubscription(database(), { userId: userId!, name }, await readInput(event, body))
 })

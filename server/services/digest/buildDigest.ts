@@ -1,7 +1,8 @@
 import type { Database } from '../../../db/knex'
-import { listAreaNames, listDigestGroups, listDigestLoops, listDigestTickets, listDigestWins, lostHoursByState } from '../../../db/repositories/digests'
-import { previousWeek, weekFrame } from '../../../shared/assessment/week/isoWeek'
+import { listAreaNames, listDigestGroups, listDigestLoops, listDigestSlideBacks, listDigestTickets, listDigestWins, lostHoursByState } from '../../../db/repositories/digests'
+import { previousWeek } from '../../../shared/assessment/week/isoWeek'
 import type { DigestLoop, DigestModel } from '../../../shared/digest/model'
+import { dayIn } from '../../../shared/format/dayIn'
 import { getSettings } from '../settings'
 
 const WORST = 10
@@ -17,22 +18,21 @@ function isNews(l: DigestLoop & { lostBefore: number | null, verdictBefore: stri
 /** The figures of one person's digest for a week, for the areas followed (all when empty). */
 export async function buildDigest(db: Database, { week, areaIds, publicUrl, now }: { week: string, areaIds: number[], publicUrl: string, now: Date }): Promise<DigestModel> {
   const settings = await getSettings(db)
-  const frame = weekFrame(week, settings.zone)
-  const begin = new Date(frame.hourEdges[0]!)
-  const end = new Date(frame.hourEdges[frame.hourEdges.length - 1]!)
-  const today = new Intl.DateTimeFormat('sv-SE', { timeZone: settings.zone, dateStyle: 'short' }).format(now)
-  const inAWeek = new Intl.DateTimeFormat('sv-SE', { timeZone: settings.zone, dateStyle: 'short' }).format(now.getTime() + 7 * DAY_MS)
-  const [loops, groups, tickets, wins, areas] = await Promise.all([
-    listDigestLoops(db, week, previousWeek(week), areaIds), listDigestGroups(db, week), listDigestTickets(db, areaIds, today, inAWeek), listDigestWins(db, areaIds, begin, end), listAreaNames(db, areaIds),
+  const today = dayIn(settings.zone, now)
+  const inAWeek = dayIn(settings.zone, now.getTime() + 7 * DAY_MS)
+  // tickets close and slide back in the days before the mail, not in the days that it reports on
+  const since = new Date(now.getTime() - 7 * DAY_MS)
+  const [loops, groups, tickets, wins, slidBack, areas] = await Promise.all([
+    listDigestLoops(db, week, previousWeek(week), areaIds), listDigestGroups(db, week, areaIds), listDigestTickets(db, areaIds, today, inAWeek), listDigestWins(db, areaIds, since, now), listDigestSlideBacks(db, areaIds, since, now), listAreaNames(db, areaIds),
   ])
   const known = loops.filter(l => l.lostBefore !== null)
   const lostHours = loops.reduce((sum, l) => sum + l.lostHours, 0)
   return {
     siteName: settings.siteName, week, zone: settings.zone, areas, loops: loops.length, lostHours,
-    lostHoursBefore: known.length ? known.reduce((sum, l) => sum + l.lostBefore!, 0) : null,
+    change: known.length ? known.reduce((sum, l) => sum + l.lostHours - l.lostBefore!, 0) : null,
     byState: lostHoursByState(loops),
     worst: loops.filter(isNews).sort((a, b) => b.lostHours - a.lostHours).slice(0, WORST),
     better: loops.filter(l => (l.change ?? 0) <= -8).sort((a, b) => a.change! - b.change!).slice(0, BETTER),
-    groups, tickets, wins, publicUrl,
+    groups, tickets, wins, slidBack, publicUrl,
   }
 }

@@ -1,0 +1,22 @@
+import { resolve } from 'node:path'
+import fsDriver from 'unstorage/drivers/fs-lite'
+import s3Driver from 'unstorage/drivers/s3'
+import type { FileStorage } from '../services/tickets/files'
+import { environment } from './environment'
+
+let mounted = false
+
+/**
+ * Nitro's storage `files`: the folder `files` in DATA_DIR, or the bucket that FILES_S3_* name (any S3-compatible
+ * service). Mounted on first use, because the folder is known only when the server runs.
+ */
+export function fileStorage(): FileStorage {
+  if (!mounted) {
+    const e = environment()
+    useStorage().mount('files', e.FILES_S3_BUCKET
+      ? s3Driver({ bucket: e.FILES_S3_BUCKET, endpoint: e.FILES_S3_ENDPOINT!, region: e.FILES_S3_REGION, accessKeyId: e.FILES_S3_KEY!, secretAccessKey: e.FILES_S3_SECRET! })
+      : fsDriver({ base: resolve(e.DATA_DIR, 'files') }))
+    mounted = true
+  }
+  return useStorage('files') as unknown as FileStorage
+}
