@@ -16,8 +16,12 @@ export async function insertDue(trx: Database, due: { loopId: number, week: stri
       on conflict (loop_id, week) do update set import_ids = assessments_due.import_ids || excluded.import_ids, cause = excluded.cause`,
     [cause, importId === null ? [] : [importId], part.map(d => d.loopId), part.map(d => d.week)])
   }
-  const weeks = [...new Set(due.map(d => d.week))].sort()
-  if (weeks.length) await trx.raw('insert into weeks_due (week) select unnest(?::text[]) on conflict do nothing', [weeks])
+  await insertWeeksDue(trx, [...new Set(due.map(d => d.week))])
+}
+
+/** Marks weeks to be looked at as a whole once none of their loops waits any more. */
+export async function insertWeeksDue(db: Database, weeks: string[]): Promise<void> {
+  if (weeks.length) await db.raw('insert into weeks_due (week) select unnest(?::text[]) on conflict do nothing', [[...weeks].sort()])
 }
 
 /** Locks up to `limit` waiting loop-weeks of one week for this transaction. Rows that another worker holds are left to it. */
