@@ -1,8 +1,9 @@
 /**
  * Draws ribbons on a canvas, one row each, without gaps between the hours.
  *
- * Canvas, not SVG, by measurement (Chromium, 2,000 ribbons of a busy fleet, 336 x 20 px, see the figures in
- * tests/browser/fleet): SVG needs about 60,000 elements and several times as long for layout and paint.
+ * Canvas, not SVG, by measurement (headless Chromium, software rendering, two busy cores, 2,000 loop-weeks, three
+ * rounds each). Stacked for eight areas: first frame after 90 to 135 ms with 13 elements, against 540 to 900 ms with
+ * 22,700. One strip per row: 690 to 830 ms with 2,000 elements, against 770 to 1,890 ms with 25,700; scrolling alike.
  */
 import { STATE_COLOURS, type Theme } from '../shared/ribbon/colours'
 import { markPath } from '../shared/ribbon/markPath'

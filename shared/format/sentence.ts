@@ -9,8 +9,10 @@ import { counted, opening } from './words'
 
 export interface Piece { text: string, strong?: boolean, to?: string }
 
-const strong = (text: string, to?: string): Piece => ({ text, strong: true, ...(to ? { to } : {}) })
-const plain = (text: string): Piece => ({ text })
+/** A figure and its unit stay on one line. */
+const together = (text: string): string => text.replace(/(\d) (h|d|min|s|loop-hours?)\b/g, '$1\u00A0$2')
+const strong = (text: string, to?: string): Piece => ({ text: together(text), strong: true, ...(to ? { to } : {}) })
+const plain = (text: string): Piece => ({ text: together(text) })
 
 const moreOrFewer = (change: number): string =>
   change === 0 ? 'as many as the week before' : `${formatCount(Math.abs(change))} ${change > 0 ? 'more' : 'fewer'} than the week before`

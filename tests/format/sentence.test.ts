@@ -4,7 +4,7 @@ import { noHours } from '../../shared/ribbon/states'
 import type { FleetSummary } from '../../shared/types/fleet'
 import type { PlantAnswer } from '../../shared/types/plant'
 
-const text = (pieces: { text: string }[]) => pieces.map(p => p.text).join('')
+const text = (pieces: { text: string }[]) => pieces.map(p => p.text).join('').replaceAll('\u00A0', ' ')
 const summary = (over: Partial<FleetSummary>): FleetSummary => ({ loops: 238, lostHours: 531, change: -47, hours: noHours(), overTwenty: 14, setAside: 0, ...over })
 
 describe('fleetSentence', () => {
