@@ -1,8 +1,8 @@
 import type { LoopSetup, LoopType } from '../types'
+import { margins } from '../../control/margins/margins'
 import { seededRandom, type SeededRandom } from '../statistics/seededRandom'
 import { compressTrend } from './compressTrend'
 import { drawLoop, type DrawnLoop, type GivenRange } from './drawLoop'
-import { gainMargin } from './gainMargin'
 import { idealTuning } from './idealTuning'
 import { mixSeed } from './mixSeed'
 import { simulateLoop } from './simulateLoop'
@@ -319,10 +319,14 @@ function wanderingSetpoint({ random, loop }: Draft): SetpointProgramme {
   }
 }
 
-function marginOf(loop: DrawnLoop, stepS: number): { margin: number, periodS: number } {
-  const { setup } = loop
+/** Gain margin, and the period the loop would hunt at; the hold of the sampled controller counts as half a step of dead time. */
+function marginOf({ setup, linear }: DrawnLoop, stepS: number): { margin: number, periodS: number } {
   const ideal = idealTuning(setup.form, setup.gain!, setup.integralTimeS, setup.derivativeTimeS)
-  return gainMargin(loop.linear, { ...ideal, controllerGain: ideal.controllerGain * 100 / (setup.pvHigh - setup.pvLow), measurementFilterTime: setup.filterTimeS ?? 0 }, stepS)
+  const { gainMargin, phaseCrossover } = margins(
+    { ...linear, processGain: Math.abs(linear.processGain), deadTime: linear.deadTime + stepS / 2 },
+    { ...ideal, controllerGain: ideal.controllerGain * 100 / (setup.pvHigh - setup.pvLow), measurementFilterTime: setup.filterTimeS ?? 0 },
+  )
+  return { margin: gainMargin, periodS: phaseCrossover === null ? NaN : 2 * Math.PI / phaseCrossover }
 }
 
 /** A swing must be at least nine samples long to be read, and short enough to be seen fifty times. */
