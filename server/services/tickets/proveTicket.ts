@@ -3,6 +3,7 @@ import { listLoops, type LoopRow } from '../../../db/repositories/loops'
 import { listRibbons, readDataMark } from '../../../db/repositories/ticketEvidence'
 import { findTicket, listTicketEvents, type TicketRow } from '../../../db/repositories/tickets'
 import { listBlocks } from '../../../db/repositories/trendBlocks'
+import { medianInterval } from '../../../shared/assessment/preparation/medianInterval'
 import { prepareRecord } from '../../../shared/assessment/preparation/prepareRecord'
 import { compareWindows } from '../../../shared/assessment/proof/compareWindows'
 import { proofRecord, type LedgerHour } from '../../../shared/assessment/proof/proofRecord'
@@ -76,14 +77,14 @@ async function proveLoop(db: Database, loop: LoopRow, { ticket, query, settings,
   const base = { tag: loop.tag, provisional: true, before, iaeRatio: null, varianceRatio: null, lostHoursWonPerWeek: null, checks: [], method: METHOD, source: SOURCE, samplesBefore: 0, samplesAfter: 0, blockLength: null, seed, verdict: 'cannotTell' as const }
   if (workDoneMs === null && !query.afterFrom) return { ...base, after: { fromMs: before.toMs, toMs: before.toMs }, reason: 'The work is not handed back yet, so there is no time after it to compare with.' }
   const wanted = given(query.afterFrom, query.afterTo, { fromMs: workDoneMs ?? before.toMs, toMs: (workDoneMs ?? before.toMs) + WEEK_MS }, 'after')
-  const end = await windows.lastSampleBefore(wanted)
+  const end = await windows.endOfData(wanted)
   if (end === null) return { ...base, after: wanted, reason: 'There are no data yet from the time after the work.' }
   const after: ProofWindow = { fromMs: wanted.fromMs, toMs: query.afterTo ? wanted.toMs : Math.min(wanted.toMs, end) }
 
   const compare = async (b: ProofWindow, a: ProofWindow) => await windows.compare(b, a, seed)
   if (!query.afterTo) {
     const next: ProofWindow = { fromMs: wanted.toMs, toMs: wanted.toMs + WEEK_MS }
-    const nextEnd = await windows.lastSampleBefore(next)
+    const nextEnd = await windows.endOfData(next)
     // data come in calendar weeks and work ends on any day: three days of the further week will do
     if (nextEnd !== null && nextEnd - next.fromMs >= 72 * HOUR_MS) {
       const further = await compare(before, next)
@@ -115,10 +116,10 @@ export function proofWindows(db: Database, loop: LoopRow, settings: SiteSettings
   }
   return {
     hasData: async (w: ProofWindow) => (await read(w)).t.length > 1,
-    /** just after the last sample inside the window; null when it holds none */
-    lastSampleBefore: async (w: ProofWindow) => {
+    /** the end of the time that the last sample inside the window stands for; null when it holds none */
+    endOfData: async (w: ProofWindow) => {
       const { t } = await read(w)
-      return t.length > 1 ? t[t.length - 1]! + 1 : null
+      return t.length > 1 ? Math.min(w.toMs, t[t.length - 1]! + medianInterval(t)) : null
     },
     compare: async (before: ProofWindow, after: ProofWindow, seed: number, level?: number) => {
       // both windows in the same bins; the first is binned before the second is read into the same memory

@@ -44,7 +44,7 @@ async function look(trx: Knex.Transaction, ticket: TicketRow, week: string, span
   for (const own of proof.loops as LoopProof[]) {
     const loop = loops.find(l => l.tag === own.tag)
     // only a week that the proof has not seen is new evidence
-    if (!loop || shelved.has(loop.id) || own.verdict !== 'better' || span.fromMs < own.after.toMs - 1) continue
+    if (!loop || shelved.has(loop.id) || own.verdict !== 'better' || span.fromMs < own.after.toMs) continue
     const now = await proofWindows(trx, loop, settings).compare(own.after, span, ticket.id * 1000 + Number(week.slice(5).replace('W', '')), LEVEL)
     const lost = now.lostHoursWonPerWeek
     if (now.verdict !== 'worse' || !lost || lost.high >= 0 || lost.value > -WORTH_HOURS) continue
