@@ -3,12 +3,12 @@ import { dirname, resolve } from 'node:path'
 import { fileURLToPath, pathToFileURL } from 'node:url'
 import { Piscina } from 'piscina'
 
-/** A pool for one thread file: the bundled one beside the worker, or the source through tsx when run from the sources. */
+/** A pool for one thread file: the bundled one beside the worker (from the web server: in the worker's build), or the source through tsx when run from the sources. */
 export function threadPool(name: string, threads: number): Piscina {
   let folder = dirname(fileURLToPath(import.meta.url))
-  for (let up = 0; up < 5; up++, folder = dirname(folder)) {
-    const bundled = resolve(folder, `threads/${name}.mjs`)
-    if (existsSync(bundled)) return new Piscina({ filename: pathToFileURL(bundled).href, minThreads: 0, maxThreads: threads, idleTimeout: 300_000 })
+  for (let up = 0; up < 9; up++, folder = dirname(folder)) {
+    const bundled = [`threads/${name}.mjs`, `.build/worker/threads/${name}.mjs`].map(path => resolve(folder, path)).find(existsSync)
+    if (bundled) return new Piscina({ filename: pathToFileURL(bundled).href, minThreads: 0, maxThreads: threads, idleTimeout: 300_000 })
     const source = resolve(folder, `server/threads/${name}.ts`)
     if (existsSync(source)) return new Piscina({ filename: pathToFileURL(source).href, minThreads: 0, maxThreads: threads, idleTimeout: 300_000, execArgv: ['--import', 'tsx'] })
   }
