@@ -214,9 +214,11 @@ async function readText(db: Knex, row: ImportRow, file: TextFile, options: ReadO
     await storing
     if (unknown.size) throw new Question(describe(form, file, zone, ['unknownLoops'], [...indexOf.keys(), ...unknown].sort().map(tag => ({ tag, known: find(tag) !== null, signals: [], type: typeOfTag(tag) }))))
     await store(collector.drain(true))
-    if (log.rows > 0 && log.samples === 0 && log.missing.empty + log.missing.nan + log.missing.text + log.missing.badQuality === 0) {
+    if (log.rows === 0) throw new UnreadableFile('The file has a header and no rows.')
+    const nothingSeen = log.samples + log.missing.empty + log.missing.nan + log.missing.text + log.missing.badQuality === 0
+    if (nothingSeen && skipped.size === 0) {
       const first = log.rejects[0]
-      throw new UnreadableFile(first ? `No row could be read. Line ${first.line}: ${first.reason}${first.cell ? ` ("${first.cell.slice(0, 60)}")` : ''}.` : 'The file holds no signal of a loop that is to be taken in.')
+      throw new UnreadableFile(first ? `No row could be read. Line ${first.line}: ${first.reason}${first.cell ? ` ("${first.cell.slice(0, 60)}")` : ''}.` : 'The file holds no signal of a loop.')
     }
     await rangesOf(trx, collector, ids, known, touched)
     await writeRejects(trx, row.id, log.rejects)
