@@ -9,6 +9,8 @@ export interface Stretch {
   end: number
   /** slots before the first move, which may serve as history for the dead time */
   lead: number
+  /** largest single move of the set point (in manual: of OP), share of its span; 0 for natural ones */
+  size: number
   usable: boolean
   reason: string
   /** ranges, own units */
@@ -25,7 +27,7 @@ const SP_MOVE_FRACTION = 0.005
 /**
  * Stretches of a record that may carry a process model: around moves of the set point in a normal mode, around moves of
  * OP in manual, and the liveliest pieces of normal operation in between. Each says whether it is usable and why not.
- * A move counts from half a per cent of span. A stretch reaches from one settling horizon before its first move to five
+ * A move counts from half a per cent of span. A stretch reaches from half a settling horizon before its first move to three
  * after its last; moves closer together than that share a stretch. O(n).
  * @param record the prepared record of the time looked at
  * @param outages times that say nothing about the process
@@ -38,7 +40,7 @@ export function findStretches(record: PreparedRecord, setup: LoopSetup, outages:
   const opSpan = setup.opHigh - setup.opLow
   const pvSpan = setup.pvHigh - setup.pvLow
   const found: Stretch[] = []
-  const judge = (kind: StretchKind, begin: number, end: number, lead: number) => { found.push({ kind, begin, end, lead, ...judged(record, setup, outages, begin, end) }) }
+  const judge = (kind: StretchKind, begin: number, end: number, lead: number, size = 0) => { found.push({ kind, begin, end, lead, size, ...judged(record, setup, outages, begin, end) }) }
 
   for (const whole of record.stretches) {
     for (const [from, to, manual] of runs(flags, whole.begin, whole.end)) {
@@ -48,11 +50,13 @@ export function findStretches(record: PreparedRecord, setup: LoopSetup, outages:
       const moves = signal ? movesOf(signal, from, to, manual ? OP_MOVE_FRACTION * opSpan : SP_MOVE_FRACTION * pvSpan) : []
       const taken: [number, number][] = []
       for (let i = 0; i < moves.length;) {
-        const begin = Math.max(from, taken.length ? taken[taken.length - 1][1] : from, moves[i] - horizon)
+        const begin = Math.max(from, taken.length ? taken[taken.length - 1][1] : from, moves[i] - Math.ceil(horizon / 2))
         let last = i
-        while (last + 1 < moves.length && moves[last + 1] - moves[last] < 6 * horizon && moves[last + 1] + 2 * horizon - begin < MOST_SAMPLES) last++
-        const end = Math.min(to, moves[last + 1] ?? to, moves[last] + 5 * horizon, begin + MOST_SAMPLES)
-        judge(manual ? 'manualMove' : 'setpointMove', begin, end, moves[i] - begin)
+        while (last + 1 < moves.length && moves[last + 1] - moves[last] < 3 * horizon && moves[last + 1] + 3 * horizon - begin < MOST_SAMPLES) last++
+        const end = Math.min(to, moves[last + 1] ?? to, moves[last] + 3 * horizon, begin + MOST_SAMPLES)
+        // over three samples, as a short ramp is one move
+        const size = Math.max(...moves.slice(i, last + 1).map(m => Math.abs(signal![Math.min(end - 1, m + 2)] - signal![m - 1]))) / (manual ? opSpan : pvSpan)
+        judge(manual ? 'manualMove' : 'setpointMove', begin, end, moves[i] - begin, Number.isFinite(size) ? size : 0)
         taken.push([begin, end])
         i = last + 1
       }
@@ -95,9 +99,9 @@ function between(taken: [number, number][], from: number, to: number): [number, 
   return out
 }
 
-/** Pieces of about twenty horizons. */
+/** pieces of about five horizons. */
 function pieces(from: number, to: number, horizon: number): [number, number][] {
-  const length = Math.min(MOST_SAMPLES, Math.max(200, 20 * horizon))
+  const length = Math.min(MOST_SAMPLES, Math.max(150, 5 * horizon))
   const count = Math.max(1, Math.floor((to - from) / length))
   return Array.from({ length: count }, (_, k) => [from + k * length, Math.min(to, from + (k + 1) * length)])
 }

@@ -29,7 +29,7 @@ export function fitLoop(record: LoopRecord, setup: LoopSetup, outages: readonly 
   const ms = (s: Stretch) => ({ fromMs: prepared.t[s.begin], toMs: Math.round(prepared.t[s.end - 1] + prepared.intervalS * 1000) })
   const wanted = (s: Stretch) => chosen?.some(c => c.fromMs === ms(s).fromMs && c.toMs === ms(s).toMs) ?? false
   // moves first, the larger the better; what was asked for by name always
-  const rank = (s: Stretch) => (wanted(s) ? 1e6 : 0) + (s.usable ? 1e3 : 0) + (s.kind === 'natural' ? 0 : 100) + Math.min(99, 100 * s.opMove / (setup.opHigh - setup.opLow))
+  const rank = (s: Stretch) => (wanted(s) ? 1e6 : 0) + (s.usable ? 1e3 : 0) + (s.kind === 'natural' ? Math.min(99, 100 * s.opMove / (setup.opHigh - setup.opLow)) : 100 + 100 * s.size)
   const shown = [...found].sort((a, b) => rank(b) - rank(a)).slice(0, 12)
   const fitted = shown.filter(s => s.usable).slice(0, MOST_FITTED)
   const block = Math.max(1, Math.ceil(Math.max(0, ...fitted.map(s => s.end - s.begin)) / MOST_SAMPLES_OF_A_FIT))
@@ -51,7 +51,8 @@ export function fitLoop(record: LoopRecord, setup: LoopSetup, outages: readonly 
   }
   const able = fitted.filter(s => s.usable)
   const carries = (s: Stretch) => own.get(s)!.fits.some(f => f.kind === own.get(s)!.best && f.status === 'ok')
-  const together = chosen ? able.filter(wanted) : able.some(carries) ? able.filter(carries) : able
+  const moves = able.filter(s => s.kind !== 'natural')
+  const together = chosen ? able.filter(wanted) : able.some(carries) ? able.filter(carries) : moves.length ? moves : able
   const jointFit = together.length ? compare(together) : null
   const joint = jointFit && toComparison(jointFit)
   const bestFit = jointFit && usableFit(jointFit.best)
