@@ -97,13 +97,16 @@ const columns: Record<keyof TicketChange, string> = {
   proof: 'proof', proofFinal: 'proof_final', proofFinalAt: 'proof_final_at', workDoneAt: 'work_done_at', closedAt: 'closed_at', closedBy: 'closed_by',
 }
 
-/** Writes a change and counts the version up; call it with the row locked. */
+/**
+ * Writes a change; call it with the row locked. Counts the version up, except for answers to checks alone: they carry
+ * their own lock, and a technician's answer must not refuse an engineer's change of the due date.
+ */
 export async function updateTicket(trx: Database, id: number, change: TicketChange): Promise<void> {
   const values: Record<string, unknown> = {}
   for (const [key, value] of Object.entries(change)) {
     values[columns[key as keyof TicketChange]] = value !== null && (key === 'checks' || key === 'proof') ? JSON.stringify(value) : value
   }
-  await trx('tickets').where({ id }).update({ ...values, version: trx.raw('version + 1'), updated_at: trx.fn.now() })
+  await trx('tickets').where({ id }).update({ ...values, ...(Object.keys(change).some(key => key !== 'checks') ? { version: trx.raw('version + 1') } : {}), updated_at: trx.fn.now() })
 }
 
 export interface TicketEvent { id: number, at: Date, userId: number | null, actor: string, kind: string, text: string | null, data: Record<string, unknown> }

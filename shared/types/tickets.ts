@@ -1,4 +1,5 @@
 import type { EvidenceItem, Verdict } from '../assessment/types'
+import type { FieldCheck } from '../tickets/fieldChecks'
 
 export const TICKET_STATES = ['open', 'assigned', 'inWork', 'toVerify', 'closed', 'dropped'] as const
 export type TicketState = typeof TICKET_STATES[number]
@@ -98,4 +99,47 @@ export interface TicketItem {
   version: number
   createdAt: string | Date
   closedAt: string | Date | null
+}
+
+export interface TicketEventView { id: number, at: string, userId: number | null, actor: string, kind: string, text: string | null, data: Record<string, unknown> }
+export interface TicketFileView { id: number, name: string, mediaType: string, bytes: number, createdAt: string }
+export type TuningValues = Record<string, string | number | null>
+export interface TicketLoopView { id: number, tag: string, description: string, area: string | null, unit: string, pvUnit: string, checks: FieldCheck[], tuning: TuningValues | null }
+export interface TicketTuningView { id: number, tag: string, at: string, actor: string, kind: 'asFound' | 'asLeft' | 'imported' | 'unrecorded', tuning: TuningValues, reason: string, changeNumber: string | null }
+
+/** A ticket as its page gets it. */
+export interface TicketView {
+  id: number
+  title: string
+  state: TicketState
+  priority: 1 | 2 | 3
+  dueOn: string | null
+  assigneeId: number | null
+  assignee: string | null
+  openedBy: number | null
+  opener: string | null
+  followUpOf: number | null
+  followUps: number[]
+  week: string
+  evidence: KeptEvidence[]
+  checks: TicketChecks
+  outcome: Outcome | null
+  closeReason: string | null
+  proof: TicketProof | null
+  proofFinal: boolean
+  workDoneAt: string | null
+  closedAt: string | null
+  version: number
+  createdAt: string
+  updatedAt: string
+  loops: TicketLoopView[]
+  events: TicketEventView[]
+  files: TicketFileView[]
+  watchers: { id: number, name: string }[]
+  watching: boolean
+  tuning: TicketTuningView[]
+  moves: TicketState[]
+  mayWork: boolean
+  cautions: string[]
+  changeNumberRequired: boolean
 }
