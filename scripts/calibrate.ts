@@ -9,6 +9,7 @@ import { readFileSync, writeFileSync } from 'node:fs'
 import { fileURLToPath } from 'node:url'
 import { FEATURES, type FeatureValues } from '../shared/assessment/verdict/gatherFeatures'
 import { binOf, posteriorOf, type LikelihoodTable } from '../shared/assessment/verdict/likelihoods'
+import { seededRandom } from '../shared/assessment/statistics/seededRandom'
 import { CAUSE_VERDICT, type Cause } from '../shared/assessment/simulation/scenario'
 import type { Verdict } from '../shared/assessment/types'
 import { LOOP_TYPES, runCases, type Case, type CaseResult } from './simulatedCases'
@@ -39,6 +40,19 @@ async function trainingLoops(): Promise<CaseResult[]> {
   const save = option('save')
   if (save) writeFileSync(save, JSON.stringify(results, (_, v) => (typeof v === 'number' && v !== v ? 'NaN' : v)))
   return results
+}
+
+/**
+ * The same loop with a wider tolerance: its pattern and its cause stay, only the cost goes. Without these copies the table would take the
+ * size against the tolerance for a cause, and pass over a sticking valve on a loop whose tolerance is generous.
+ */
+function withWiderTolerance(r: CaseResult): CaseResult | null {
+  const verdict = CAUSE_VERDICT[r.cause]
+  if (verdict === 'noise' || verdict === 'sensor' || r.seed % 2) return null
+  const random = seededRandom(r.seed ^ 0x5f3759df)
+  const k = Math.exp(Math.log(1.5) + random.uniform() * Math.log(verdict === 'sluggish' ? 2 : 6))
+  const f = r.features
+  return { ...r, features: { ...f, amplitudeOverTolerance: f.amplitudeOverTolerance / k, deviationOverTolerance: f.deviationOverTolerance / k, noiseOverTolerance: f.noiseOverTolerance / k, offTargetShare: k > 2 ? 0 : f.offTargetShare } }
 }
 
 const classOf = (r: CaseResult): number => CLASSES.indexOf(COUNTED.includes(r.cause) ? 'steady' : CAUSE_VERDICT[r.cause])
@@ -133,7 +147,7 @@ function score(table: LikelihoodTable, loops: CaseResult[]): { loss: number, rig
   return { loss, right }
 }
 
-const loops = await trainingLoops()
+const loops = (await trainingLoops()).flatMap((r) => { const wide = withWiderTolerance(r); return wide ? [r, wide] : [r] })
 const rest = loops.filter(heldOut)
 const table = fit(loops.filter(r => !heldOut(r)))
 table.training.heldOut = rest.length

@@ -27,6 +27,7 @@ import { halfCycles } from './verdict/halfCycles'
 import { judge } from './verdict/judge'
 import { readingCharacter } from './verdict/readingCharacter'
 import { recoveries } from './verdict/recoveries'
+import { slipEvents } from './verdict/slipEvents'
 import { stickFit } from './verdict/stickFit'
 import { valvePanel } from './verdict/valvePanel'
 
@@ -76,38 +77,39 @@ export function assessLoopWeek(record: LoopRecord, setup: LoopSetup, week: WeekF
   const meaningful = setup.form === 'onOff' ? setup.tolerance : setup.tolerance / 2
   const hunting = enough ? findHunting(prepared, series, setup, meaningful, noise) : null
   const oscillations = hunting?.oscillations ?? []
-  const strongest = oscillations[0]
+  const pattern = hunting?.pattern ?? null
   const counted = oscillations.filter(o => o.amplitude >= meaningful).flatMap(o => o.episodes)
   const ledger = buildLedger(prepared, setup.tolerance, week, counted, outages)
-  explainOscillation(explain, strongest, hunting?.series ?? null, setup.tolerance, counted, usableS, enough ? 'No regular oscillation was found.' : tooFew)
+  explainOscillation(explain, oscillations[0], hunting?.series ?? null, setup.tolerance, counted, usableS, enough ? 'No regular oscillation was found.' : tooFew)
 
   // the stretch on which shape and valve are judged: an episode inside one segment, else the longest segment
   const home = hunting?.series ?? null
-  const whole = home && (strongest ? longestEpisode(home, strongest) ?? longestSegment(home) : longestSegment(home))
-  const stretch = whole && middleOfStretch(whole, strongest ? Math.ceil(MOST_CYCLES * strongest.periodS / home!.intervalS) : MOST_SAMPLES)
+  const whole = home && (pattern ? longestEpisode(home, pattern) ?? longestSegment(home) : longestSegment(home))
+  const stretch = whole && middleOfStretch(whole, pattern ? Math.ceil(MOST_CYCLES * pattern.periodS / home!.intervalS) : MOST_SAMPLES)
   const y = home && stretch ? home.error.slice(stretch.begin, stretch.end) : null
   // minus the error is PV without what the set point does
   if (y) for (let i = 0; i < y.length; i++) y[i] = -y[i]
   const u = home?.op && stretch ? home.op.subarray(stretch.begin, stretch.end) : null
-  const period = strongest && home ? strongest.periodS / home.intervalS : null
+  const period = pattern && home ? pattern.periodS / home.intervalS : null
   const character = enough ? errorCharacter(series) : null
   const tooSlow = swingTooFast(prepared, home, period)
   const panelSilent = setup.form === 'onOff' ? 'The valve tests are not for on-off loops.' : compression ?? tooSlow
   const processSign = setup.action === 'reverse' ? 1 : -1
-  const stick = y && u && character && !panelSilent ? stickFit(y, u, processSign, (3 * (strongest?.periodS ?? 2 * character.staySideS)) / home!.intervalS) : null
-  const panel = valvePanel(y, u, period, setup.type, opSpan, stick, panelSilent)
+  const stick = y && u && character && !panelSilent ? stickFit(y, u, processSign, (3 * (pattern?.periodS ?? 2 * character.staySideS)) / home!.intervalS) : null
+  const slip = y && u && home && stretch && !panelSilent ? slipEvents(y, home.pv.subarray(stretch.begin, stretch.end), u, processSign, noise / Math.sqrt(home.factor)) : null
+  const panel = valvePanel(y, u, period, setup.type, opSpan, stick, slip, panelSilent)
   const shape = y && period !== null && period >= 4 && y.length >= 6 * period ? cycleShape(y, u, period) : null
-  const halves = enough && character && character.deviation > 0 ? halfCycles(series, 0.7 * character.deviation, false) : null
+  const halves = enough && character && character.deviation > 0 ? halfCycles(series, 0.7 * character.deviation) : null
   const upsets = enough ? recoveries(series, setup.settlingS, noise / Math.sqrt(series.factor), processSign, pvSpan) : null
   const responses = explainResponses(explain, enough ? series : null, setup, activity.kind, noise, upsets)
   const benchmarkByHorizon = explainBenchmark(explain, series, setup, compression)
 
-  const features = gatherFeatures({ setup, prepared, series, ledger, oscillations, shape, error: character, reading, stick, halves, panel, upsets })
+  const features = gatherFeatures({ setup, prepared, series, ledger, oscillations: pattern ? [pattern, ...oscillations.slice(1)] : [], shape, error: character, reading, stick, slip, halves, panel, upsets })
   options.features?.(features)
   const judged = judge({ setup, prepared, ledger, features, oscillations, meaningful, compression, tooSlow, enough })
   if (isInsufficient(panel.stiction)) explain.withholdAll(['apparentStiction', 'apparentStictionLow', 'apparentStictionHigh'], sentence(panel.stiction.reason))
   else if (judged.valveLikely) {
-    const p = { opSpan, periodS: strongest?.periodS ?? null }
+    const p = { opSpan, periodS: pattern?.periodS ?? null }
     explain.set('apparentStiction', panel.stiction.percent, y!.length, p, { cycles: panel.stiction.cycles })
     explain.set('apparentStictionLow', panel.stiction.low, y!.length, p, { cycles: panel.stiction.cycles })
     explain.set('apparentStictionHigh', panel.stiction.high, y!.length, p, { cycles: panel.stiction.cycles })
@@ -129,8 +131,8 @@ export function assessLoopWeek(record: LoopRecord, setup: LoopSetup, week: WeekF
     oscillations,
     responses,
     valveTests: panel.tests,
-    rhythm: home ? rhythmOf(home, setup.settlingS, strongest?.periodS) : null,
-    pvOp: home && stretch && (strongest || judged.valveLikely) ? pvOpOf(home, stretch.begin, stretch.end, strongest?.periodS ?? null) : null,
+    rhythm: home ? rhythmOf(home, setup.settlingS, pattern?.periodS) : null,
+    pvOp: home && stretch && (pattern || judged.valveLikely) ? pvOpOf(home, stretch.begin, stretch.end, pattern?.periodS ?? null) : null,
     benchmarkByHorizon,
     model: null,
   }

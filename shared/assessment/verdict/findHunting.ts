@@ -14,17 +14,18 @@ import type { PreparedRecord } from '../preparation/prepareRecord'
 import { halfCycles, type HalfCycles } from './halfCycles'
 
 export interface Hunting {
+  /** what is reported; the strongest first */
   oscillations: Oscillation[]
-  /** the series on which the strongest was found: its samples, not the analysis interval's, show its shape */
+  /** what cause and valve are judged on: the strongest, or an uneven swing too small to be reported */
+  pattern: Oscillation | null
+  /** the series on which the pattern was found: its samples, not the analysis interval's, show its shape */
   series: AnalysisSeries
-  irregular: HalfCycles | null
 }
 
 const HIDDEN_VARIANCE = 0.15
 const SMALLEST_SHARE = 0.2
-/** Runs of alike half-cycles that are too few or too small a share come about by chance. */
-const LEAST_IN_RUNS = 24
-const LEAST_RUN_SHARE = 0.3
+/** Runs of alike half-cycles that are too few or too small a share come about by chance (up to 0.45 on simulated sound loops). */
+const ENOUGH_RUNS = [{ halves: 12, share: 0.65 }, { halves: 24, share: 0.5 }]
 
 /**
  * @param meaningful amplitude from which an oscillation costs hours, PV unit; smaller ones down to a fifth of it are
@@ -49,19 +50,29 @@ export function findHunting(prepared: PreparedRecord, series: AnalysisSeries, se
       oscillations = [...quick, ...oscillations.filter(o => o.periodS > 8 * series.intervalS)]
     }
   }
-  let irregular: HalfCycles | null = null
-  if (!oscillations.length && meaningful > 0) {
-    const h = halfCycles(series, Math.max(meaningful, 3 * noise / Math.sqrt(series.factor)))
-    if (h.inRuns >= LEAST_IN_RUNS && h.inRuns >= LEAST_RUN_SHARE * h.count && h.periodS >= 6 * series.intervalS && h.periodS <= longestPeriodS) {
-      irregular = h
-      oscillations = [asOscillation(h, series)]
+  let pattern = oscillations[0] ?? null
+  if (!pattern) {
+    const least = Math.max(minimumAmplitude, 3 * noise / Math.sqrt(series.factor), 0.7 * deviationOf(series))
+    const h = least > 0 ? halfCycles(series, least) : NO_HALF_CYCLES
+    if (ENOUGH_RUNS.some(e => h.inRuns >= e.halves && h.inRuns >= e.share * h.count) && h.periodS >= 8 * series.intervalS && h.periodS <= longestPeriodS) {
+      pattern = asOscillation(h, series)
+      if (h.amplitude >= meaningful) oscillations = [pattern]
     }
   }
   // a cycle is read on at least 16 samples where the record has them
-  const strongest = oscillations[0]
-  if (strongest && home.factor > 1 && strongest.periodS < 16 * home.intervalS)
-    home = analysisSeries(prepared, setup.settlingS, { factor: Math.max(1, Math.floor(strongest.periodS / 16 / prepared.intervalS)) })
-  return { oscillations, series: home, irregular }
+  if (pattern && home.factor > 1 && pattern.periodS < 16 * home.intervalS)
+    home = analysisSeries(prepared, setup.settlingS, { factor: Math.max(1, Math.floor(pattern.periodS / 16 / prepared.intervalS)) })
+  return { oscillations, pattern, series: home }
+}
+
+const NO_HALF_CYCLES: HalfCycles = { count: 0, inRuns: 0, lengthVariation: NaN, peakVariation: NaN, periodS: NaN, amplitude: NaN, runs: [] }
+
+function deviationOf(series: AnalysisSeries): number {
+  let mean = 0
+  let square = 0
+  for (const s of series.segments) for (let i = s.begin; i < s.end; i++) mean += series.error[i] / series.used
+  for (const s of series.segments) for (let i = s.begin; i < s.end; i++) square += (series.error[i] - mean) ** 2
+  return Math.sqrt(square / series.used)
 }
 
 /** Share of the error's variance that averaging down has taken away. */

@@ -8,6 +8,7 @@ import type { AnalysisSeries } from '../preparation/analysisSeries'
 import type { CycleShape } from './cycleShape'
 import type { ErrorCharacter } from './errorCharacter'
 import type { HalfCycles } from './halfCycles'
+import type { SlipEvents } from './slipEvents'
 import type { StickFit } from './stickFit'
 import type { Recoveries } from './recoveries'
 import type { ValvePanel } from './valvePanel'
@@ -16,8 +17,8 @@ import type { ReadingCharacter } from './readingCharacter'
 export const FEATURES = [
   'huntingShare', 'regularity', 'strength', 'amplitudeOverTolerance',
   'amplitudeVariation', 'periodVariation', 'phaseWander', 'pvThird', 'opThird', 'pvOdd', 'pvEven', 'pvCoherence',
-  'halfLengthVariation', 'halfPeakVariation', 'periodOverIntegralTime', 'periodOverDeadTime', 'setpointSwing', 'manualSwing',
-  'stickExplained', 'stickGain', 'stickRest', 'standingTravel', 'jumpShare', 'halfCycleShape', 'peakAsymmetry', 'stickSlip', 'lagAsymmetry',
+  'halfLengthVariation', 'halfPeakVariation', 'halfRunShare', 'periodOverIntegralTime', 'periodOverDeadTime', 'setpointSwing', 'manualSwing',
+  'stickExplained', 'stickGain', 'stickRest', 'slipShare', 'slipCount', 'standingTravel', 'jumpShare', 'halfCycleShape', 'peakAsymmetry', 'stickSlip', 'lagAsymmetry',
   'errorDecayOverSettling', 'staySideOverSettling', 'slowShare', 'recoveryOverSettling', 'swingBack', 'idleIndex',
   'whiteness', 'kurtosis', 'deviationOverTolerance', 'noiseOverTolerance', 'noiseShare', 'burstRatio', 'wildShare', 'offTargetShare',
 ] as const
@@ -36,6 +37,7 @@ export interface FeatureParts {
   panel: ValvePanel
   upsets: Recoveries | null
   stick: StickFit | null
+  slip: SlipEvents | null
   halves: HalfCycles | null
 }
 
@@ -89,9 +91,14 @@ export function gatherFeatures(parts: FeatureParts): FeatureValues {
     v.swingBack = parts.upsets.swingBack
     v.idleIndex = parts.upsets.idleIndex
   }
+  if (parts.slip && parts.slip.looked >= 2) {
+    v.slipShare = parts.slip.slips / parts.slip.looked
+    v.slipCount = parts.slip.slips
+  }
   if (parts.halves) {
     v.halfLengthVariation = parts.halves.lengthVariation
     v.halfPeakVariation = parts.halves.peakVariation
+    v.halfRunShare = parts.halves.count >= 12 ? parts.halves.inRuns / parts.halves.count : NaN
   }
   const sd = error ? error.deviation : NaN
   v.deviationOverTolerance = sd / tolerance

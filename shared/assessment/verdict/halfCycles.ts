@@ -29,11 +29,8 @@ export interface HalfCycles {
 const RUN = 12
 const LARGE_SHARE = 0.8
 
-/**
- * @param least smallest peak that counts, PV unit, > 0
- * @param withRuns false: only the figures over all large half-cycles
- */
-export function halfCycles(series: AnalysisSeries, least: number, withRuns = true): HalfCycles {
+/** @param least smallest peak that counts, PV unit, > 0 */
+export function halfCycles(series: AnalysisSeries, least: number): HalfCycles {
   if (!(least > 0)) throw new RangeError(`halfCycles: least must be above 0, got ${least}`)
   const lengths: number[] = []
   const peaks: number[] = []
@@ -68,7 +65,7 @@ export function halfCycles(series: AnalysisSeries, least: number, withRuns = tru
     }
     // longest alike runs, greedily from the left
     let a = 0
-    while (withRuns && a + RUN <= halves.length) {
+    while (a + RUN <= halves.length) {
       if (halves[a].peak < least || !alike(halves, a, a + RUN, least)) {
         a++
         continue

@@ -49,6 +49,8 @@ const LEAST_CONFIDENCE = 0.55
 const LEAST_WITHOUT_LOSS = 0.7
 const LEAST_VALVE = 0.65
 
+const SUREST_ALONE = 0.92
+
 const HUNTING: Verdict[] = ['huntingTuning', 'huntingValve', 'huntingExternal']
 
 const STATEMENTS: Readonly<Record<Verdict, string>> = {
@@ -63,6 +65,8 @@ const STATEMENTS: Readonly<Record<Verdict, string>> = {
   noise: 'Noise dominates the error.',
   cannotTell: 'The cause cannot be told.',
 }
+
+const UNEVEN_VALVE = 'The valve most likely sticks, though the loop does not swing evenly.'
 
 export function judge(facts: Facts): Judgement {
   const { setup, ledger, features, oscillations, compression, tooSlow, enough, prepared } = facts
@@ -131,7 +135,9 @@ function inferredFinding(facts: Facts, posterior: Posterior): Judgement {
   const { classes, probability } = posterior
   const order = classes.map((_, c) => c).sort((a, b) => probability[b] - probability[a])
   const hoursOf = (v: Verdict) => (HUNTING.includes(v) ? hours.hunting : v === 'steady' ? 0 : hours.offTarget)
-  const finding = (c: number): Finding => ({ verdict: classes[c], confidence: round(probability[c]), hours: hoursOf(classes[c]), evidence: evidenceOf(facts, posterior, c) })
+  // only the other loops of the group can prove that a rhythm comes from elsewhere
+  const sure = (c: number) => round(classes[c] === 'huntingExternal' ? Math.min(SUREST_ALONE, probability[c]) : probability[c])
+  const finding = (c: number): Finding => ({ verdict: classes[c], confidence: sure(c), hours: hoursOf(classes[c]), evidence: evidenceOf(facts, posterior, c) })
   const top = order[0]
   const verdict = classes[top]
   const p = probability[top]
@@ -146,12 +152,15 @@ function inferredFinding(facts: Facts, posterior: Posterior): Judgement {
   if (p < LEAST_CONFIDENCE) return undecided(`The evidence points two ways: ${NAMES[verdict]} (${percent(p)}) or ${NAMES[classes[order[1]]]} (${percent(probability[order[1]])}).`)
   if (verdict === 'huntingValve' && p < LEAST_VALVE) return undecided(`A sticking valve is possible (${percent(p)}), but not sure enough to name it.`)
   if (HUNTING.includes(verdict) && !hunts && p < LEAST_WITHOUT_LOSS) return undecided('There is a small swing whose cause is not clear.')
+  if (verdict === 'sluggish' && hours.offTarget === 0) {
+    return { verdict: 'steady', confidence: round(p), verdictReason: 'The loop keeps within its tolerance, though it works off upsets slowly.', findings: [finding(top), ...others], evidence: evidenceOf(facts, posterior, top), nextActions: NEXT_ACTIONS.steady, valveLikely: false }
+  }
   if (verdict === 'steady' && hours.hunting > 0.1 * (hours.hunting + hours.offTarget + hours.steady)) return undecided(`The loop hunted for ${h(hours.hunting)}, but the pattern fits no cause well.`)
   if (verdict === 'steady' && features.offTargetShare > 0.2) return undecided(`The loop was off target for ${h(hours.offTarget)}, without a pattern that names a cause.`)
   const own = finding(top)
   const extra = own.hours > 0 ? ` It cost ${h(own.hours)}.` : verdict === 'steady' ? '' : ' It cost no hour so far.'
   return {
-    verdict, confidence: own.confidence, verdictReason: STATEMENTS[verdict] + extra, findings: [own, ...others],
+    verdict, confidence: own.confidence, verdictReason: (verdict === 'huntingValve' && !oscillations.length ? UNEVEN_VALVE : STATEMENTS[verdict]) + extra, findings: [own, ...others],
     evidence: own.evidence, nextActions: NEXT_ACTIONS[verdict], valveLikely: false,
   }
 }
@@ -173,12 +182,12 @@ function evidenceOf(facts: Facts, posterior: Posterior, c: number): EvidenceItem
     if (x !== x) continue
     let other = 0
     f.perClass.forEach((w, k) => { if (k !== c) other += (posterior.probability[k] / rest) * w })
-    const weight = f.perClass[c] - other
+    const weight = Number((f.perClass[c] - other).toFixed(2))
     const told = EVIDENCE_TEXTS[f.name]
     const edge = f.bin < f.edges.length ? f.edges[f.bin] : f.edges[f.edges.length - 1]
     items.push({
       measure: told.measure, value: Number(x.toPrecision(4)), threshold: edge === undefined ? null : Number(edge.toPrecision(4)),
-      says: weight > 0.1 ? 'for' : weight < -0.1 ? 'against' : 'silent', weight: Number(weight.toFixed(2)), source: told.source, text: told.text(x),
+      says: weight > 0.1 ? 'for' : weight < -0.1 ? 'against' : 'silent', weight, source: told.source, text: told.text(x),
     })
   }
   return items.sort((a, b) => Math.abs(b.weight) - Math.abs(a.weight)).slice(0, 12)

@@ -12,6 +12,7 @@ import { peakAsymmetry } from '../valve/peakAsymmetry'
 import { stickAndJump } from '../valve/stickAndJump'
 import { stickSlipPatterns } from '../valve/stickSlipPatterns'
 import { averageDown } from '../valve/averageDown'
+import type { SlipEvents } from './slipEvents'
 import type { StickFit } from './stickFit'
 
 export interface ValvePanel {
@@ -27,6 +28,7 @@ const ROWS = {
   asymmetry: { name: 'Asymmetry of the peaks', source: 'Singhal, Salsbury 2005', domain: 'Oscillating self-regulating loop', threshold: 'clearly above 1: sticking (limit 1.5, ours)' },
   patterns: { name: 'Stick-slip patterns of OP and PV', source: 'Yamashita 2006, with equiprobable symbols', domain: 'PV follows the valve without much lag (flow, fast pressure)', threshold: 'above 0.25: sticking' },
   jump: { name: 'Stand and jump', source: 'Ours, after Choudhury, Thornhill, Shah 2005', domain: 'PV follows the valve within a fraction of the period', threshold: 'both shares above 0.55: sticking' },
+  slip: { name: 'Slips across the set point', source: 'Ours, after Choudhury, Thornhill, Shah 2005', domain: 'PV follows the valve within a few samples; long half-cycles', threshold: '2 or more, in at least 30 % of the long half-cycles (ours)' },
   fit: { name: 'Fit of a sticking stem', source: 'After Srinivasan and others 2005; He and others 2007', domain: 'Automatic mode, OP moving', threshold: 'explains at least 5 % more of PV than a sound stem, and half of it (ours)' },
   band: { name: 'Dead band and slip', source: 'Ours, after Choudhury, Thornhill, Shah 2005', domain: 'Signs of sticking; PV follows the valve quickly', threshold: 'a size, no limit' },
 } satisfies Record<string, Row>
@@ -37,7 +39,7 @@ const ROWS = {
  * @param period samples; null: no regular oscillation was found
  * @param withheld a reason that silences the whole panel (compressed, too slow, on-off), or null
  */
-export function valvePanel(pv: Float64Array | null, op: Float64Array | null, period: number | null, type: LoopType, opSpan: number, fit: StickFit | null, withheld: string | null): ValvePanel {
+export function valvePanel(pv: Float64Array | null, op: Float64Array | null, period: number | null, type: LoopType, opSpan: number, fit: StickFit | null, slip: SlipEvents | null, withheld: string | null): ValvePanel {
   const tests: ValveTest[] = []
   const values = { halfCycleShape: NaN, peakAsymmetry: NaN, standingTravel: NaN, jumpShare: NaN, stickSlip: NaN, lagAsymmetry: NaN }
   const silence = withheld ?? (!op ? 'The record has no OP.' : !pv || pv.length < 64 ? 'Too few samples in automatic.' : null)
@@ -88,6 +90,10 @@ export function valvePanel(pv: Float64Array | null, op: Float64Array | null, per
     values.standingTravel = r.standingTravel
     values.jumpShare = r.jumpShare
     return [r.standingTravel, r.says, `${percent(r.standingTravel)} of the output's travel was made while PV stood; ${percent(r.jumpShare)} of PV's travel in its fastest fifth.`]
+  })
+  run(ROWS.slip, !slip || slip.looked < 2 ? 'Fewer than two half-cycles are long and large enough.' : null, () => slip!, (r) => {
+    const share = r.slips / r.looked
+    return [share, r.slips >= 2 && share >= 0.3 ? 'sticking' : 'undecided', `${r.slips} of ${r.looked} long half-cycles end in a jump that the output had asked for.`]
   })
   run(ROWS.fit, fit ? null : 'Too few samples, or OP stood still.', () => fit!, f => [f.explained - f.linear, f.explained - f.linear > 0.05 && f.explained > 0.5 ? 'sticking' : 'undecided',
     `A sticking stem explains ${percent(f.explained)} of PV's movement, a sound one ${percent(f.linear)}.`])
