@@ -19,9 +19,11 @@ export async function enqueue(trx: Database, name: JobName): Promise<void> {
   if (ready) {
     await sender.send(name, {}, {
       db: {
+        // the transaction's own connection, because knex has no parameters by number
         async executeSql(text: string, values: unknown[]) {
-          const bindings: unknown[] = []
-          return await trx.raw(text.replace(/\$(\d+)/g, (_, n) => { bindings.push(values[Number(n) - 1]); return '?' }), bindings as never)
+          const connection = await trx.client.acquireConnection()
+          try { return await connection.query(text, values) }
+          finally { await trx.client.releaseConnection(connection) }
         },
       },
     })
