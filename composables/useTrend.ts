@@ -1,17 +1,24 @@
 import { computed, ref, shallowRef, watch } from 'vue'
 
 export interface TrendData { t: number[], pv: (number | null)[], sp: (number | null)[], op: (number | null)[], mode: (string | null)[] }
+type TrendAnswer = Omit<TrendData, 't'> & { t: string[] }
+
+/** Samples of a loop in a window, thinned with the peaks kept; times as epoch ms. */
+export async function fetchTrend(tag: string, w: TrendWindow, points: number, signal?: AbortSignal): Promise<TrendData> {
+  const answer = await useApi().get<TrendAnswer>(`/api/loops/${encodeURIComponent(tag)}/trend`, { from: new Date(w.from).toISOString(), to: new Date(w.to).toISOString(), points }, signal)
+  return { ...answer, t: answer.t.map(at => Date.parse(at)) }
+}
+
 export interface TrendWindow { from: number, to: number }
 
 /** A loop's trend for a window that can be narrowed and taken back; finer data are fetched for each window. */
 export function useTrend(tag: () => string, whole: () => TrendWindow | null) {
-  const api = useApi()
   const stack = ref<TrendWindow[]>([])
   const window_ = computed(() => stack.value[stack.value.length - 1] ?? whole())
   const { data, failure, pending, reload } = useLoad<TrendData | null>(async (signal) => {
     const w = window_.value
     if (!w) return null
-    return api.get<TrendData>(`/api/loops/${encodeURIComponent(tag())}/trend`, { from: new Date(w.from).toISOString(), to: new Date(w.to).toISOString(), points: 1500 }, signal)
+    return fetchTrend(tag(), w, 1500, signal)
   }, [tag, window_])
   watch([tag, () => whole()?.from], () => { stack.value = [] })
   const shown = shallowRef<TrendWindow | null>(null)

@@ -23,6 +23,9 @@ export function demodulate(x: Float64Array, { t0Ms, sampleIntervalS, periodS, or
   const im = new Float64Array(windows).fill(NaN)
   const perWindow = Math.round(windowS / sampleIntervalS)
   const omega = 2 * Math.PI / periodS
+  const taperOf = Float64Array.from({ length: perWindow }, (_, k) => 0.5 - 0.5 * Math.cos(2 * Math.PI * (k + 0.5) / perWindow))
+  const stepRe = Math.cos(omega * sampleIntervalS)
+  const stepIm = Math.sin(omega * sampleIntervalS)
   for (let w = 0; w < windows; w++) {
     const first = Math.ceil((originMs + w * windowS * 1000 - t0Ms) / (sampleIntervalS * 1000))
     const last = Math.min(x.length, first + perWindow)
@@ -35,16 +38,22 @@ export function demodulate(x: Float64Array, { t0Ms, sampleIntervalS, periodS, or
     let sumRe = 0
     let sumIm = 0
     let sumTaper = 0
+    // phase counted from the common origin in whole turns plus remainder, so that a long record loses no digits; within
+    // the window by rotation, which errs by rounding only
+    const angle = omega * (((t0Ms - originMs) / 1000 + first * sampleIntervalS) % periodS)
+    let c = Math.cos(angle)
+    let s = Math.sin(angle)
     for (let k = first; k < last; k++) {
       const value = x[k]
-      if (value !== value) continue
-      const taper = 0.5 - 0.5 * Math.cos(2 * Math.PI * (k - first + 0.5) / perWindow)
-      // phase counted from the common origin in whole turns plus remainder, so that a long record loses no digits
-      const seconds = (t0Ms - originMs) / 1000 + k * sampleIntervalS
-      const angle = omega * (seconds % periodS)
-      sumRe += taper * (value - mean) * Math.cos(angle)
-      sumIm -= taper * (value - mean) * Math.sin(angle)
-      sumTaper += taper
+      if (value === value) {
+        const taper = taperOf[k - first]
+        sumRe += taper * (value - mean) * c
+        sumIm -= taper * (value - mean) * s
+        sumTaper += taper
+      }
+      const next = c * stepRe - s * stepIm
+      s = s * stepRe + c * stepIm
+      c = next
     }
     re[w] = 2 * sumRe / sumTaper
     im[w] = 2 * sumIm / sumTaper

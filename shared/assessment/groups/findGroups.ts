@@ -22,8 +22,10 @@ export interface GroupCandidate {
 export interface GroupMember { tag: string, strength: number, lagS: number, coherence: number, rank: number, score: number, reasons: string[] }
 export interface LoopGroup { periodS: number, members: GroupMember[], likelySource: string, ranking: SourceRank[] }
 
-/** Periods that differ by less than this belong together, whatever their own scatter says. */
-const PERIOD_TOLERANCE = 0.05
+/** Periods that differ by more cannot be the same oscillation; estimates of irregular ones scatter this far. The phase decides. */
+const PERIOD_TOLERANCE = 0.15
+/** Periods at which waves are demodulated lie on a grid this fine (in ln), so that each loop is demodulated a few times only. */
+const GRID = 0.05
 /** Chance of one pair under independence; corrected for the number of pairs that were compared. */
 const FALSE_PAIR = 0.01
 /** Below this share of common power two loops do not hunt together, however many windows say so. */
@@ -34,7 +36,7 @@ const PERIODS_PER_WINDOW = 4
  * Groups of loops that hunt together: the same period within its uncertainty, then a steady phase (coherence of
  * complex demodulates), single linkage, then each member checked against the group as a whole.
  *
- * Cost: only pairs of similar period are compared; with 2,000 loops of which 500 hunt a second or so.
+ * Cost: only pairs of similar period are compared, and each loop is demodulated at a few periods only.
  *
  * @param candidates loops with an oscillation; series may differ in interval and begin
  * @param span epoch ms of the stretch to look at, e.g. a week
@@ -43,54 +45,61 @@ const PERIODS_PER_WINDOW = 4
  * of dynamic process data (idea of grouping by spectrum); the phase check is our own, built on the sample coherence.
  */
 export function findGroups(candidates: readonly GroupCandidate[], { fromMs, toMs }: { fromMs: number, toMs: number }): LoopGroup[] {
-  const sorted = candidates.filter(c => c.periodS >= 4 * c.sampleIntervalS && Number.isFinite(c.periodS)).sort((a, b) => a.periodS - b.periodS || a.tag.localeCompare(b.tag))
-  const groups: LoopGroup[] = []
-  let begin = 0
-  for (let end = 1; end <= sorted.length; end++) {
-    if (end < sorted.length && close(sorted[end - 1], sorted[end])) continue
-    if (end - begin >= 2) groups.push(...groupsOfOnePeriod(sorted.slice(begin, end), fromMs, toMs))
-    begin = end
+  const loops = candidates.filter(c => c.periodS >= 4 * c.sampleIntervalS && Number.isFinite(c.periodS)).sort((a, b) => a.periodS - b.periodS || a.tag.localeCompare(b.tag))
+  const waves = waveCache(loops, fromMs, toMs)
+  const near: [number, number][] = []
+  for (let i = 0; i < loops.length; i++) {
+    for (let j = i + 1; j < loops.length && loops[j].periodS <= loops[i].periodS * (1 + PERIOD_TOLERANCE); j++) if (loops[i].tag !== loops[j].tag) near.push([i, j])
   }
-  return groups.sort((a, b) => b.members.length - a.members.length || a.periodS - b.periodS)
-}
-
-function close(a: GroupCandidate, b: GroupCandidate): boolean {
-  const scatter = 2 * Math.hypot(a.periodSdS, b.periodSdS)
-  return Math.abs(a.periodS - b.periodS) <= Math.min(0.15 * a.periodS, Math.max(PERIOD_TOLERANCE * a.periodS, scatter))
-}
-
-function groupsOfOnePeriod(loops: GroupCandidate[], fromMs: number, toMs: number): LoopGroup[] {
-  // the strongest loops set the clock: their period is known best
-  const weight = loops.reduce((sum, l) => sum + l.strength, 0)
-  const periodS = weight > 0 ? Math.exp(loops.reduce((sum, l) => sum + l.strength * Math.log(l.periodS), 0) / weight) : loops[0].periodS
-  const windowS = PERIODS_PER_WINDOW * periodS
-  const windows = Math.floor((toMs - fromMs) / 1000 / windowS)
-  if (windows < 4) return []
-  const waves: (Demodulated | null)[] = loops.map(l => periodS >= 4 * l.sampleIntervalS
-    ? demodulate(l.series, { t0Ms: l.t0Ms, sampleIntervalS: l.sampleIntervalS, periodS, originMs: fromMs, windowS, windows })
-    : null)
-  const pairs = loops.length * (loops.length - 1) / 2
   const parent = loops.map((_, k) => k)
   const root = (k: number): number => (parent[k] === k ? k : (parent[k] = root(parent[k])))
-  for (let i = 0; i < loops.length; i++) {
-    for (let j = i + 1; j < loops.length; j++) {
-      if (!waves[i] || !waves[j]) continue
-      const { coherence, chance } = phaseCoherence(waves[i]!, waves[j]!, periodS)
-      if (coherence >= LEAST_COHERENCE && chance < FALSE_PAIR / pairs) parent[root(i)] = root(j)
-    }
+  for (const [i, j] of near) {
+    const found = waves.compare(i, j)
+    if (found && found.coherence >= LEAST_COHERENCE && found.chance < FALSE_PAIR / near.length) parent[root(i)] = root(j)
   }
   const clusters = new Map<number, number[]>()
   loops.forEach((_, k) => clusters.set(root(k), [...(clusters.get(root(k)) ?? []), k]))
-  const clock = { periodS, originMs: fromMs, windowS, windows }
-  return [...clusters.values()].filter(c => c.length >= 2).map(cluster => describe(cluster, loops, waves, clock)).filter(g => g !== null)
+  return [...clusters.values()].filter(c => c.length >= 2).map(cluster => describe(cluster, loops, waves, fromMs, toMs)).filter(g => g !== null)
+    .sort((a, b) => b.members.length - a.members.length || a.periodS - b.periodS)
 }
 
-/** Members measured against the group's common wave; those that single linkage only chained in are left out. */
-function describe(cluster: number[], loops: GroupCandidate[], waves: (Demodulated | null)[], clock: { periodS: number, originMs: number, windowS: number, windows: number }): LoopGroup | null {
-  const { periodS } = clock
+interface Waves { compare: (i: number, j: number) => ReturnType<typeof phaseCoherence> | null }
+
+/** Demodulated waves by loop and grid period, made when first asked for. */
+function waveCache(loops: GroupCandidate[], fromMs: number, toMs: number): Waves {
+  const kept = new Map<string, Demodulated>()
+  const wave = (k: number, grid: number, clock: Clock): Demodulated => {
+    const key = `${k} ${grid}`
+    let found = kept.get(key)
+    if (!found) kept.set(key, found = demodulate(loops[k].series, { t0Ms: loops[k].t0Ms, sampleIntervalS: loops[k].sampleIntervalS, ...clock }))
+    return found
+  }
+  return {
+    compare(i, j) {
+      const grid = Math.round(Math.log(loops[i].periodS * loops[j].periodS) / 2 / GRID)
+      const clock = clockOf(Math.exp(grid * GRID), fromMs, toMs)
+      if (clock.windows < 4 || [i, j].some(k => clock.periodS < 4 * loops[k].sampleIntervalS)) return null
+      return phaseCoherence(wave(i, grid, clock), wave(j, grid, clock), clock.periodS)
+    },
+  }
+}
+
+interface Clock { periodS: number, originMs: number, windowS: number, windows: number }
+function clockOf(periodS: number, fromMs: number, toMs: number): Clock {
+  const windowS = PERIODS_PER_WINDOW * periodS
+  return { periodS, originMs: fromMs, windowS, windows: Math.floor((toMs - fromMs) / 1000 / windowS) }
+}
+
+/** Members measured against the strongest of them; those that single linkage only chained in are left out. */
+function describe(cluster: number[], loops: GroupCandidate[], waves: Waves, fromMs: number, toMs: number): LoopGroup | null {
+  const strength = cluster.reduce((sum, k) => sum + loops[k].strength, 0)
+  const periodS = strength > 0 ? Math.exp(cluster.reduce((sum, k) => sum + loops[k].strength * Math.log(loops[k].periodS), 0) / strength) : loops[cluster[0]].periodS
+  const clock = clockOf(periodS, fromMs, toMs)
   const reference = cluster.reduce((best, k) => (loops[k].strength > loops[best].strength ? k : best), cluster[0])
-  const measured = cluster.map(k => ({ loop: loops[k], ...phaseCoherence(waves[reference]!, waves[k]!, periodS) }))
+  const all = cluster.map(k => ({ loop: loops[k], ...(k === reference ? { coherence: 1, lagS: 0 } : waves.compare(reference, k) ?? { coherence: 0, lagS: 0 }) }))
     .filter(m => m.coherence >= LEAST_COHERENCE * 0.9)
+  // a loop with two oscillations near each other is one member: the stronger
+  const measured = all.filter(m => !all.some(o => o !== m && o.loop.tag === m.loop.tag && o.loop.strength > m.loop.strength))
   if (measured.length < 2) return null
   const ranking = rankSources(measured.map(m => ({ tag: m.loop.tag, strength: m.loop.strength, lagS: m.lagS, valveEvidence: m.loop.valveEvidence, nonlinearity: nonlinearityOf(m.loop, clock), upstream: m.loop.upstream })), periodS)
   const members = ranking.map((r, k) => {
