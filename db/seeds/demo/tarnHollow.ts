@@ -149,6 +149,7 @@ function makeDemoLoop(line: DemoLine): Drawn {
     scenario.setpoint = { kind: 'constant', value: line.at }
   }
   tell(story, setup, scenario)
+  if (story.fromDay === undefined && story.toDay === undefined) comeAndGo(line, story, setup, scenario)
   if (isOven) ({ setup, scenario } = oven(line, setup, scenario))
   if (isShuttle) shuttle(line, setup, scenario)
   if (SECONDARIES.has(line.tag)) secondary(line, setup, scenario)
@@ -236,6 +237,52 @@ function tell({ cause, fromDay, toDay }: Story, setup: LoopSetup, scenario: Loop
     default: return
   }
   scenario.truth.spans = [{ fromS: from, toS: to }]
+}
+
+/** The feed-water valve sticks at high fire, every afternoon. */
+const AFTERNOON = { from: 13, hours: 9 }
+
+/**
+ * Hunting comes and goes in a plant: with the load, the shift, the product. One in four hunts all the time; the others in
+ * certain hours of the day, or for days on end where their cycle is too long for that.
+ */
+function comeAndGo(line: DemoLine, story: Story, setup: LoopSetup, scenario: LoopScenario): void {
+  const { cause, facts } = scenario.truth
+  // members of the group follow their source
+  if (!['stickingValve', 'tightTuning', 'carriedIn'].includes(cause) || line.tag in GROUP.members) return
+  const random = seededRandom(mixSeed(SEED, 5000 + INDEX.get(line.tag)!))
+  const isSource = line.tag === GROUP.source
+  const period = Number(facts.periodS)
+  if (!Number.isFinite(period) || story.always || (!isSource && random.uniform() < 0.25)) return
+  const spans: { fromS: number, toS: number }[] = []
+  if (isSource || period * 14 < 6 * HOUR) {
+    const from = isSource ? AFTERNOON.from : 4 + random.integer(14)
+    const hours = isSource ? AFTERNOON.hours : 6 + random.integer(6)
+    for (let day = 0; day < STORY_DAYS; day++) {
+      if (!isSource && random.uniform() < 0.2) continue
+      const at = day * DAY + (from + 1.6 * (random.uniform() - 0.5)) * HOUR
+      spans.push({ fromS: Math.round(at), toS: Math.round(at + (hours + 1.6 * (random.uniform() - 0.5)) * HOUR) })
+    }
+  }
+  else {
+    for (let at = DAY * random.uniform(); at < STORY_DAYS * DAY;) {
+      const length = Math.max(14 * period, DAY * (0.7 + 1.6 * random.uniform()))
+      spans.push({ fromS: Math.round(at), toS: Math.round(at + length) })
+      at += length + DAY * (0.6 + 1.8 * random.uniform())
+    }
+  }
+  const { valve } = scenario
+  const tight = { gain: setup.gain, integralTimeS: setup.integralTimeS }
+  // a stand-in for a process gain that falls with the load: seen from outside the same
+  const calm = { gain: (setup.gain ?? 1) / (setup.type === 'level' ? 0.6 : 2.8), integralTimeS: (setup.integralTimeS ?? 1) * (setup.type === 'level' ? 6 : 1.6) }
+  // where the calm tuning cannot hold the tolerance the loop was made tight for a reason, and stays so
+  if (cause === 'tightTuning' && errorDeviation({ ...setup, ...calm }, scenario) / 100 * (setup.pvHigh - setup.pvLow) > 0.6 * setup.tolerance) return
+  if (cause === 'carriedIn') scenario.loads = scenario.loads.map(l => l.kind === 'periodic' ? { ...l, spans } : l)
+  else {
+    const set = (at: number, bad: boolean): SimulationEvent => (cause === 'stickingValve' ? { at, kind: 'valve', valve: bad ? valve : { kind: 'deadBand', width: 0.2 } } : { at, kind: 'tuning', tuning: bad ? tight : calm })
+    scenario.events.push(set(0, false), ...spans.flatMap(span => [set(span.fromS, true), set(span.toS, false)]))
+  }
+  scenario.truth.spans = spans
 }
 
 /** On-off heating: the third oven's sensor sits far from the heater, the fourth's band is too narrow for its contactor. */

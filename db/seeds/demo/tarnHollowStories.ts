@@ -11,6 +11,8 @@ export interface Story {
   fromDay?: number
   /** day on which it ends, by repair, retuning or return to automatic; left out: lasts */
   toDay?: number
+  /** hunts at all hours; without it most loops do so at certain hours or days only */
+  always?: boolean
 }
 
 /** The sticking feed-water valve, and who hunts with it: each reached with its delay in s. */
@@ -23,9 +25,9 @@ export const GROUP = {
 export const CASCADES: Readonly<Record<string, string>> = { 'LIC-321': 'FIC-322', 'TIC-251': 'FIC-252', 'TIC-811': 'FIC-812', 'TIC-821': 'FIC-822' }
 
 export const STORIES: Readonly<Record<string, Story>> = {
-  'FIC-312': { cause: 'stickingValve', text: 'The feed water valve of boiler 1 sticks; the header and half the boiler house hunt with it.' },
+  'FIC-312': { cause: 'stickingValve', text: 'The feed water valve of boiler 1 sticks at high fire in the afternoons; the header and half the boiler house hunt with it.' },
   'PIC-337': { cause: 'stickingValve', text: 'Let-down valve stuck in week 1; packing adjusted and positioner checked on Tuesday of week 2.', toDay: 8.42 },
-  'FIC-473': { cause: 'stickingValve', text: 'Dosing valve of mill 3, coated with slip.' },
+  'FIC-473': { cause: 'stickingValve', text: 'Dosing valve of mill 3, coated with slip.', always: true },
   'TIC-2402': { cause: 'stickingValve', text: 'Damper of dryer 4 moves in jumps.' },
   'LIC-753': { cause: 'stickingValve', text: 'Effluent valve sticks; the sump level swings slowly.' },
   'PIC-551': { cause: 'stickingValve', text: 'Press 5 pressure valve sticks.' },
