@@ -1,8 +1,13 @@
 import { z } from 'zod'
+import { previousWeek } from '../assessment/week/isoWeek'
 import { LEDGER_STATES, VERDICTS } from '../assessment/types'
 import { FLEET_SORT_KEYS } from '../types/fleet'
 
-export const weekSchema = z.string().regex(/^\d{4}-W(0[1-9]|[1-4]\d|5[0-3])$/, 'must be an ISO week such as 2026-W48')
+/** An ISO week that there is: most years have no week 53. */
+export const weekSchema = z.string().refine((text) => {
+  try { return Boolean(previousWeek(text)) }
+  catch { return false }
+}, 'must be an ISO week such as 2026-W48')
 
 /** One value, several by comma, or the key given several times; '' counts as not given. */
 const several = <O>(item: z.ZodType<O, string>) => z.union([z.string(), z.array(z.string())]).optional()
@@ -17,7 +22,7 @@ const sortKeys: ReadonlySet<string> = new Set([...FLEET_SORT_KEYS, ...LEDGER_STA
 const sortItem = z.string().refine(text => sortKeys.has(text.replace(/^-/, '')), { error: issue => `"${String(issue.input).slice(0, 40)}" is nothing to sort by` })
 
 export const fleetQuerySchema = z.object({
-  week: z.union([z.literal('').transform(() => undefined), weekSchema]).optional(),
+  week: z.string().optional().transform(text => text || undefined).pipe(weekSchema.optional()),
   sort: several(sortItem),
   area: names,
   type: several(z.enum(['flow', 'pressure', 'level', 'temperature', 'analysis', 'other'])),

@@ -115,11 +115,11 @@ describe('GET /api/loops', () => {
   })
 
   it('refuses what it does not know, naming it', async () => {
-    for (const query of ['sort=-nothing', 'week=2026-47', 'week=2026-W60', 'state=broken', 'verdict=bad', 'limit=0', 'offset=-1', 'priority=4', `sort=tag;drop table loops`, 'sort=constructor']) {
+    for (const query of ['sort=-nothing', 'week=2026-47', 'week=2026-W60', 'week=2025-W53', 'state=broken', 'verdict=bad', 'limit=0', 'offset=-1', 'priority=4', `sort=tag;drop table loops`, 'sort=constructor']) {
       const { status, body } = await viewer('GET', `/api/loops?${query}`)
       expect(status, query).toBe(422)
-      expect(body.data.issues[0].path).toBe(query.split('=')[0])
-      expect(body.message.length).toBeGreaterThan(10)
+      expect(body.data.issues[0].path.split('.')[0]).toBe(query.split('=')[0])
+      expect(body.message, query).toMatch(/must be|is nothing|Invalid option|Too (small|big)|expected/i)
     }
     expect((await viewer('GET', '/api/loops?week=2020-W01')).body).toMatchObject({ week: '2020-W01', total: 0, rows: [] })
   })
