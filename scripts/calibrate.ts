@@ -20,6 +20,8 @@ const SEEDS: Partial<Record<Cause, number>> = {
   healthy: 44, tightTuning: 40, stickingValve: 50, carriedIn: 40, sluggish: 30, sensorNoisy: 14, sensorSpiky: 12, noiseDominated: 22,
   saturated: 5, leftInManual: 5, sensorFrozen: 5, sensorOutOfRange: 5,
 }
+/** The same for short pieces. */
+const CROPPED_SEEDS: Partial<Record<Cause, number>> = { healthy: 16, tightTuning: 14, stickingValve: 24, carriedIn: 14, sluggish: 10, noiseDominated: 6 }
 const CLASSES: Verdict[] = ['steady', 'huntingTuning', 'huntingValve', 'huntingExternal', 'sluggish', 'sensor', 'noise']
 const COUNTED: Cause[] = ['saturated', 'leftInManual', 'sensorFrozen', 'sensorOutOfRange']
 const BINS = 6
@@ -34,6 +36,7 @@ async function trainingLoops(): Promise<CaseResult[]> {
   if (from) return JSON.parse(readFileSync(from, 'utf8'), (_, v) => (v === 'NaN' ? NaN : v)) as CaseResult[]
   const cases: Case[] = []
   for (const [cause, seeds] of Object.entries(SEEDS) as [Cause, number][]) for (const type of LOOP_TYPES) for (let s = 0; s < seeds; s++) cases.push({ cause, type, seed: FIRST_SEED + s })
+  for (const [cause, seeds] of Object.entries(CROPPED_SEEDS) as [Cause, number][]) for (const type of LOOP_TYPES) for (let s = 0; s < seeds; s++) cases.push({ cause, type, seed: FIRST_SEED + 500 + s, crop: true })
   const begin = performance.now()
   const results = await runCases(cases, 2, (done) => { if (done % 200 < 8) process.stdout.write(`\r${done} of ${cases.length} loops`) })
   process.stdout.write(`\r${results.length} of ${cases.length} loops in ${Math.round((performance.now() - begin) / 1000)} s\n`)

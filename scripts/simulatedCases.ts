@@ -7,13 +7,15 @@ import { fileURLToPath } from 'node:url'
 import { assessLoopWeek } from '../shared/assessment/assessLoopWeek'
 import { drawScenario } from '../shared/assessment/simulation/drawScenario'
 import { simulateLoop } from '../shared/assessment/simulation/simulateLoop'
-import type { Cause } from '../shared/assessment/simulation/scenario'
-import type { LedgerState, LoopType, Verdict } from '../shared/assessment/types'
+import type { Cause, LoopTruth } from '../shared/assessment/simulation/scenario'
+import { seededRandom } from '../shared/assessment/statistics/seededRandom'
+import type { LedgerState, LoopRecord, LoopType, Verdict } from '../shared/assessment/types'
 import { weekFrame } from '../shared/assessment/week/isoWeek'
 
 export const LOOP_TYPES: LoopType[] = ['flow', 'pressure', 'level', 'temperature', 'analysis', 'other']
 
-export interface Case { cause: Cause, type: LoopType, seed: number }
+/** `crop`: only a few cycles, or a short piece, of the record; training only */
+export interface Case { cause: Cause, type: LoopType, seed: number, crop?: boolean }
 export interface CaseResult extends Case {
   truth: Verdict
   /** cause beneath a record that is too slow or compressed */
@@ -42,11 +44,12 @@ function optionsOf(type: LoopType, seed: number): { days: number, intervalS?: nu
 const WEEK = weekFrame('2026-W48', 'UTC')
 
 /** null: the draw did not come out visible, which the simulator says. */
-export function runCase({ cause, type, seed }: Case): CaseResult | null {
+export function runCase({ cause, type, seed, crop }: Case): CaseResult | null {
   // some causes do not show in a short or coarse record of some types: then the usual one
   const drawn = drawOrNull(cause, type, seed, optionsOf(type, seed)) ?? drawOrNull(cause, type, seed, { days: DAYS[type] })
   if (!drawn) return null
-  const { record } = simulateLoop(drawn.setup, drawn.scenario)
+  const simulated = simulateLoop(drawn.setup, drawn.scenario)
+  const record = crop ? cropped(simulated.record, drawn.truth, seed) : simulated.record
   // one site in three has no tuning on record
   const withoutTuning = seed % 3 === 0
   const setup = withoutTuning ? { ...drawn.setup, gain: null, integralTimeS: null, derivativeTimeS: null, filterTimeS: null } : drawn.setup
@@ -67,6 +70,25 @@ function drawOrNull(cause: Cause, type: LoopType, seed: number, options: { days:
     if (error instanceof RangeError && /came out visible/.test(error.message)) return null
     throw error
   }
+}
+
+/**
+ * A piece inside the time in which the cause acts: 2.5 to 8 cycles where it hunts, else 2 to 20 % of the record; 150 samples at least. A week of
+ * fifty cycles and more is not all that people upload.
+ */
+function cropped(record: LoopRecord, truth: LoopTruth, seed: number): LoopRecord {
+  const random = seededRandom(seed ^ 0x2545f491)
+  const n = record.t.length
+  const interval = (record.t[n - 1] - record.t[0]) / (n - 1)
+  const period = Number(truth.facts.periodS) * 1000
+  const wish = period > 0 ? period * (2.5 + 5.5 * random.uniform()) / interval : n * 0.02 * 10 ** random.uniform()
+  const length = Math.min(n, Math.max(150, Math.round(wish)))
+  const span = truth.spans[0] ?? { fromMs: record.t[0], toMs: record.t[n - 1] }
+  const first = Math.max(0, Math.round((span.fromMs - record.t[0]) / interval))
+  const last = Math.min(n, Math.round((span.toMs - record.t[0]) / interval))
+  const from = Math.max(0, Math.min(n - length, first + Math.floor(random.uniform() * Math.max(1, last - first - length))))
+  const part = (a: Float64Array | null) => a && a.slice(from, from + length)
+  return { ...record, t: part(record.t)!, pv: part(record.pv)!, sp: part(record.sp), op: part(record.op), mode: record.mode && record.mode.slice(from, from + length) }
 }
 
 /** All cases over `workers` processes, in the order given; cases that did not come out are left out. */

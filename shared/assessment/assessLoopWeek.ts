@@ -177,8 +177,9 @@ function explainTime(explain: Explainer, prepared: PreparedRecord, setup: LoopSe
     explain.set('saturationHighFraction', c.high / c.op, c.op, l, { samplesAtHigh: c.high })
   }
   const m = valveMovement(op, prepared.stretches, intervalS, opSpan)
-  explain.set('valveTravelPerDay', m.travelPerDay, m.samples, { ...p, opSpan }, {})
-  explain.set('reversalsPerDay', m.reversalsPerDay, m.samples, { ...p, opSpan }, { noiseBand: m.noiseBand })
+  const days = (m.samples * intervalS) / 86_400
+  explain.set('valveTravelPerDay', m.travelPerDay, m.samples, { ...p, opSpan }, { days, travelPercent: m.travelPerDay * days })
+  explain.set('reversalsPerDay', m.reversalsPerDay, m.samples, { ...p, opSpan }, { days, noiseBand: m.noiseBand, reversals: Math.round(m.reversalsPerDay * days) })
   if (setup.form === 'onOff') explain.set('switchingsPerDay', m.switchingsPerDay, m.samples, { ...p, opSpan }, {})
   return usableS
 }
@@ -188,11 +189,12 @@ function explainError(explain: Explainer, prepared: PreparedRecord, setup: LoopS
   const pvSpan = setup.pvHigh - setup.pvLow
   const p = { nativeIntervalS: prepared.intervalS }
   const none = prepared.sp ? 'No sample has both SP and PV in a normal mode.' : 'The record has no SP, so there is no control error.'
-  explain.set('iaePerHour', e.meanAbsoluteError, e.errorSamples, p, {}, none)
+  const hours = (e.errorSamples * prepared.intervalS) / 3600
+  explain.set('iaePerHour', e.meanAbsoluteError, e.errorSamples, p, { hours, integralUnitHours: e.meanAbsoluteError * hours }, none)
   explain.set('iaePercentSpan', (100 * e.meanAbsoluteError) / pvSpan, e.errorSamples, { ...p, pvSpan }, { iaePerHour: e.meanAbsoluteError }, none)
-  explain.set('offset', e.offset, e.errorSamples, p, {}, none)
+  explain.set('offset', e.offset, e.errorSamples, p, { hours, signedIntegralUnitHours: e.offset * hours }, none)
   explain.set('standardDeviation', e.standardDeviation, e.pvSamples, p, { meanPv: e.pvMean }, 'No sample of PV in a normal mode.')
-  explain.set('timeInTolerance', e.timeInTolerance, e.anySamples, { ...p, tolerance: setup.tolerance }, {}, none)
+  explain.set('timeInTolerance', e.timeInTolerance, e.anySamples, { ...p, tolerance: setup.tolerance }, { samplesWithin: Math.round(e.timeInTolerance * e.anySamples) }, none)
 }
 
 function explainOscillation(explain: Explainer, o: Oscillation | undefined, series: AnalysisSeries | null, tolerance: number, counted: TimeSpan[], usableS: number, none: string): void {
@@ -204,8 +206,8 @@ function explainOscillation(explain: Explainer, o: Oscillation | undefined, seri
   if (!o) return explain.withholdAll([...keys], none)
   explain.set('oscillationIndex', o.regularity, series.used, p, { decayRatio: o.decay, episodes: o.episodes.length })
   explain.set('oscillationPeriod', o.periodS, series.used, p, { standardErrorS: o.periodSdS })
-  explain.set('oscillationAmplitude', o.amplitude, series.used, p, {})
-  explain.set('oscillationStrength', o.strength, series.used, p, {})
+  explain.set('oscillationAmplitude', o.amplitude, series.used, p, { countsFrom: tolerance / 2 })
+  explain.set('oscillationStrength', o.strength, series.used, p, { oscillatingS: o.episodes.reduce((sum, e) => sum + e.toMs - e.fromMs, 0) / 1000 })
 }
 
 function explainOnOff(explain: Explainer, prepared: PreparedRecord, setup: LoopSetup): void {
