@@ -37,7 +37,7 @@ for (let p = 0; p < Number(values.plants); p++) {
   groupsInAll += groups.length
   const claimed = new Set<number>()
   for (const source of sources) {
-    const reached = plan.map((l, i) => (l.carriedFrom.some(c => c.source === source) ? l.setup.tag : null)).filter((t): t is string => t !== null)
+    const reached = plan.map(l => (l.carriedFrom.some(c => c.source === source) ? l.setup.tag : null)).filter((t): t is string => t !== null)
     const tag = plan[source].setup.tag
     // a source that cannot be heard in any other loop cannot be grouped
     const audible = reached.filter(t => candidates.some(c => c.tag === t))

@@ -14,3 +14,9 @@ export async function readHealth(db: Database): Promise<{ workers: boolean, wait
     : { rows: [{ waiting: 0, active: 0 }] }
   return { workers: row.workers, waiting: jobs.waiting, active: jobs.active, mailsWaiting: row.mailsWaiting, mailsFailed: row.mailsFailed }
 }
+
+/** Whether a worker has set up the job queue in this database yet. */
+export async function hasJobQueue(db: Database): Promise<boolean> {
+  const { rows: [row] } = await db.raw(`select to_regclass('pgboss.queue') is not null as ready`)
+  return row.ready
+}

@@ -6,7 +6,6 @@ export interface OutageInput { areaId: number | null, from: Date, to: Date, reas
 const base = (db: Database) => db('outages as o').leftJoin('areas as a', 'a.id', 'o.area_id').leftJoin('users as u', 'u.id', 'o.created_by')
   .select('o.id', 'o.area_id', 'a.name as area', 'o.from_at', 'o.to_at', 'o.reason', 'u.name as maker')
 
-// eslint-disable-next-line @typescript-eslint/no-explicit-any -- a row as pg hands it over
 const toOutage = (r: any): Outage => ({ id: r.id, areaId: r.area_id, area: r.area, from: r.from_at, to: r.to_at, reason: r.reason, createdBy: r.maker })
 
 export async function listOutages(db: Database): Promise<Outage[]> {

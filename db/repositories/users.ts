@@ -9,7 +9,6 @@ export interface User {
 
 const columns = ['id', 'email', 'name', 'role', 'demo', 'password_hash', 'disabled_at', 'notify', 'created_at']
 
-// eslint-disable-next-line @typescript-eslint/no-explicit-any -- a row as pg hands it over
 const toUser = (r: any): User => ({ id: r.id, email: r.email, name: r.name, role: r.role, demo: r.demo, passwordHash: r.password_hash, disabledAt: r.disabled_at, notify: r.notify, createdAt: r.created_at })
 
 /** The new account's id, or null when the address already has one. */

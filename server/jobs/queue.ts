@@ -1,4 +1,5 @@
 import PgBoss from 'pg-boss'
+import { hasJobQueue } from '../../db/repositories/health'
 import type { Database } from '../../db/knex'
 import { notifyWork } from '../../db/repositories/loopWeekWrites'
 
@@ -15,8 +16,7 @@ const sender = new PgBoss({ db: { executeSql: () => Promise.reject(new Error('en
 
 /** Rings for the workers when the transaction commits. */
 export async function enqueue(trx: Database, name: JobName): Promise<void> {
-  const { rows: [{ ready }] } = await trx.raw(`select to_regclass('pgboss.queue') is not null as ready`)
-  if (ready) {
+  if (await hasJobQueue(trx)) {
     await sender.send(name, {}, {
       db: {
         // the transaction's own connection, because knex has no parameters by number

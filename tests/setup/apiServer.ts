@@ -32,7 +32,7 @@ export async function startApiServer({ env = {}, worker = true }: { env?: Record
     } as RequestInit)
     const text = await response.text()
     let parsed: any = text
-    if (response.headers.get('content-type')?.includes('json')) parsed = JSON.parse(text)
+    if (text && response.headers.get('content-type')?.includes('json')) parsed = JSON.parse(text)
     return { status: response.status, headers: response.headers, body: parsed, text }
   }
   const call = caller({})

@@ -78,4 +78,5 @@ async function readCapped(body: Readable): Promise<Uint8Array> {
 }
 
 /** A name to show and to save under: no folders, no control characters. */
+// eslint-disable-next-line no-control-regex -- control characters are what this is about
 const plainName = (name: string) => name.replace(/[\u0000-\u001F\u007F\u202A-\u202E\u2066-\u2069]/g, '').split(/[\\/]/).pop()!.slice(-120).trim() || 'file'

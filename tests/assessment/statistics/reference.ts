@@ -2,11 +2,9 @@ import { readFileSync } from 'node:fs'
 
 const folder = new URL('../../../fixtures/reference/', import.meta.url)
 
-/* eslint-disable-next-line @typescript-eslint/no-explicit-any -- every reference file has its own shape */
 export const referenceFile = (name: string): any => JSON.parse(readFileSync(new URL(`${name}.json`, folder), 'utf8'))
 
 /** The cases of a reference file by what stands behind the section's name in their id. */
-/* eslint-disable-next-line @typescript-eslint/no-explicit-any -- see above */
 export const referenceCases = (name: string): Map<string, any> =>
   new Map(referenceFile(name).cases.map((c: { id: string }) => [c.id.slice(c.id.indexOf('/') + 1), c]))
 

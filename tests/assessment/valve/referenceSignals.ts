@@ -9,7 +9,6 @@ export function referenceSignal(name: string): Record<string, Float64Array> {
 }
 
 /** Values of a reference case, read by name in the tests. */
-// eslint-disable-next-line @typescript-eslint/no-explicit-any -- a fixture's values, of as many shapes as there are methods
 type Reference = any
 
 /** A case of fixtures/reference/<file>.json by the end of its id. */

@@ -94,7 +94,11 @@ function encodingOf(sample: Buffer): { encoding: Encoding, bom: number } {
   if (sample[0] === 0xFE && sample[1] === 0xFF) return { encoding: 'utf-16be', bom: 2 }
   let even = 0
   let odd = 0
-  for (let i = 0; i < sample.length; i++) if (sample[i] === 0) i % 2 ? odd++ : even++
+  for (let i = 0; i < sample.length; i++) {
+    if (sample[i] !== 0) continue
+    if (i % 2) odd++
+    else even++
+  }
   if (odd + even > 0) {
     const half = sample.length / 2
     if (odd > half * 0.4 && even < half * 0.05) return { encoding: 'utf-16le', bom: 0 }
