@@ -24,12 +24,16 @@ export function compareModels(stretches: readonly FitStretch[], options: Omit<Fi
   const [first, second, integrating] = candidates.map(c => c.fit)
   const bayes = (fit: ModelFit | InsufficientFit) => fit.status === 'ok' ? fit.criterion : fit.best?.criterion ?? Infinity
   const akaike = (fit: ModelFit | InsufficientFit) => fit.status === 'ok' ? fit.akaike : fit.best?.akaike ?? Infinity
+  const used = (fit: ModelFit | InsufficientFit) => fit.status === 'ok' ? fit : fit.best
+  const fitPercent = (fit: ModelFit | InsufficientFit) => used(fit)?.fitPercent ?? -Infinity
   const longest = Math.max(...stretches.map(s => s.pv.length)) * options.interval
-  const lag = (first.status === 'ok' ? first : first.best)?.parameters.timeConstant?.value ?? Infinity
-  if (bayes(integrating) < Math.min(bayes(first), bayes(second)) || (lag > longest && integrating.status === 'ok')) {
+  const lag = used(first)?.parameters.timeConstant?.value ?? Infinity
+  // Criteria look one step ahead; a kind that leaves much more of the long run unexplained is not preferred by them.
+  const keepsUp = (fit: ModelFit | InsufficientFit) => first.status !== 'ok' || fitPercent(fit) > fitPercent(first) - 5
+  if (keepsUp(integrating) && (bayes(integrating) < Math.min(bayes(first), bayes(second)) || (lag > longest && integrating.status === 'ok'))) {
     return { best: integrating, candidates, reason: 'Over the time of the stretches the process looks like an integrator: a lag adds nothing.' }
   }
-  if (akaike(second) < akaike(first) - 4) {
+  if (keepsUp(second) && (used(first)?.plain === used(second)?.plain ? akaike(second) < akaike(first) - 4 : fitPercent(second) > fitPercent(first) + 1)) {
     if (second.status === 'ok') return { best: second, candidates, reason: 'A second lag explains the response clearly better.' }
     return { best: second, candidates, reason: 'A second lag explains the response better, but the data do not determine it. The model of one lag is an approximation that mixes the two.' }
   }

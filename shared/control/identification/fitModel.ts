@@ -15,8 +15,11 @@ export interface FitOptions {
   maximumDeadTime?: number
   /** How OP moves between samples; `first` when left out (a controller that runs faster than the historian samples). */
   hold?: 'zero' | 'first'
-  /** The controller was in automatic, so the newest OP already holds the newest noise of PV; true when left out. */
-  closedLoop?: boolean
+  /**
+   * What moved OP (see `findUsableStretches`); `natural` when left out, the most careful. In automatic the newest OP already
+   * holds the newest noise of PV, so dead times below one interval are not tried (with `hold: 'first'`).
+   */
+  excitation?: 'setpointStep' | 'manualMove' | 'natural'
   /** Half width of the 95 % interval over the value that gain and lag may have at most; 0.15 when left out. */
   maximumRelativeHalfWidth?: number
 }
@@ -34,6 +37,8 @@ export interface ModelFit {
   }
   /** 100 (1 - |PV - simulated| / |PV - mean|), over all stretches; 100 is perfect, below 0 worse than the mean. */
   fitPercent: number
+  /** True where the plain fit was taken, because the process is not exactly of this kind; see `fitModel`. Criteria then compare badly. */
+  plain: boolean
   /** Bayesian information criterion; smaller is better, comparable between kinds on the same stretches. */
   criterion: number
   /** Akaike's, likewise. */
@@ -66,7 +71,7 @@ export interface InsufficientFit { status: 'insufficient', reason: string, best?
  * Checked on simulated loops whose truth is known: tests/control/identification.
  */
 export function fitModel(stretches: readonly FitStretch[], options: FitOptions): ModelFit | InsufficientFit {
-  const { kind, interval, hold = 'first', closedLoop = true, maximumRelativeHalfWidth = 0.15 } = options
+  const { kind, interval, hold = 'first', excitation = 'natural', maximumRelativeHalfWidth = 0.15 } = options
   if (!(interval > 0)) throw new RangeError(`fitModel: the interval must be positive, got ${interval}`)
   for (const { pv, op } of stretches) {
     if (pv.length !== op.length) throw new RangeError(`fitModel: PV has ${pv.length} samples and OP ${op.length}`)
@@ -82,7 +87,7 @@ export function fitModel(stretches: readonly FitStretch[], options: FitOptions):
 
   const lead = Math.max(2, Math.min(Math.floor(shortest / 4), Math.ceil((options.maximumDeadTime ?? shortest * interval / 4) / interval) + 1))
   const problem = new Problem(stretches, interval, kind, hold, lead)
-  const smallestDeadTime = closedLoop && hold === 'first' ? interval : 0
+  const smallestDeadTime = excitation !== 'manualMove' && hold === 'first' ? interval : 0
   const largestDeadTime = (lead - 1) * interval
   const longest = Math.max(...stretches.map(s => s.pv.length)) * interval
 
@@ -100,18 +105,34 @@ export function fitModel(stretches: readonly FitStretch[], options: FitOptions):
   }
   starts.sort((a, b) => a.cost - b.cost)
   let best: Solution | null = null
-  // A second start only where it lies in another valley.
-  const other = starts.find(s => Math.abs(s.nonlinear[0] - starts[0].nonlinear[0]) > 2.5 * interval && s.cost < 1.3 * starts[0].cost)
-  for (const start of other ? [starts[0], other] : [starts[0]]) {
-    const solution = problem.refine(start.nonlinear, smallestDeadTime, largestDeadTime)
+  const consider = (solution: Solution | null) => {
     if (solution && (!best || solution.sumOfSquares < best.sumOfSquares)) best = solution
   }
+  // A second start only where it lies in another valley.
+  const other = starts.find(s => Math.abs(s.nonlinear[0] - starts[0].nonlinear[0]) > 2.5 * interval && s.cost < 1.3 * starts[0].cost)
+  consider(problem.refine(starts[0].nonlinear, smallestDeadTime, largestDeadTime))
+  if (other) consider(problem.refine(other.nonlinear, smallestDeadTime, largestDeadTime))
+  // Where the noise is tiny the misfit of the start passes for noise and holds the fit there: start once more from a plain one.
+  const plain = problem.refine(starts[0].nonlinear, smallestDeadTime, largestDeadTime, true)
+  const near = (a: number[], b: number[]) => a.every((v, i) => Math.abs(v - b[i]) < (i === 0 ? interval : 0.1))
+  if (plain && !(best && near((best as Solution).nonlinear, plain.nonlinear))) consider(problem.refine(plain.nonlinear, smallestDeadTime, largestDeadTime))
   if (!best) return insufficient('The fit did not converge: the data do not determine a model of this kind.')
-  const fit = problem.report(best)
+  let solution: Solution = best
+  let fit = problem.report(solution)
+  // No real process is exactly of one of these kinds. Where OP was moved from outside and the whitened fit, which looks at
+  // the short run, leaves much of the long run unexplained, the plain fit is the better model to tune on; its intervals
+  // come from the jackknife. Not on natural excitation: there a plain fit finds the controller instead of the process.
+  if (plain && excitation !== 'natural') {
+    const plainFit = problem.report(plain)
+    if (plainFit.fitPercent > 75 && plainFit.fitPercent > fit.fitPercent + 5) {
+      solution = plain
+      fit = plainFit
+    }
+  }
   const { processGain, deadTime, timeConstant, timeConstant2 } = fit.parameters
 
   if (!(fit.fitPercent > 10)) return insufficient(`The best model explains hardly any of the movement of PV (fit ${fit.fitPercent.toFixed(0)} %): disturbances dominate, or OP moved too little.`, fit)
-  if (best.nonlinear[0] >= largestDeadTime - 1e-6 * interval) return insufficient('The dead time found lies at the end of the range searched; the stretch is too short or the model of the wrong kind.', fit)
+  if (solution.nonlinear[0] >= largestDeadTime - 1e-6 * interval) return insufficient('The dead time found lies at the end of the range searched; the stretch is too short or the model of the wrong kind.', fit)
   if (timeConstant && timeConstant.value > longest) return insufficient('The lag found is longer than the stretch: over this time the process looks like an integrator.', fit)
   const width = (p: FittedParameter) => (p.high - p.low) / 2 / Math.abs(p.value)
   if (!(width(processGain) <= maximumRelativeHalfWidth)) return insufficient(`The process gain is known only to ${percent(width(processGain))} (95 %): OP moved too little or too briefly against the disturbances.`, fit)
@@ -130,6 +151,7 @@ const blocksWanted = 8
 const rough: NoiseModel = { a: Float64Array.of(-0.5, -0.4) }
 
 interface Solution {
+  plain: boolean
   nonlinear: number[]
   linear: Float64Array
   noise: NoiseModel
@@ -256,7 +278,7 @@ class Problem {
   }
 
   /** Levenberg-Marquardt on dead time and lags with the linear parameters projected out, in turn with the noise model. */
-  refine(start: number[], smallestDeadTime: number, largestDeadTime: number): Solution | null {
+  refine(start: number[], smallestDeadTime: number, largestDeadTime: number, plain = false): Solution | null {
     this.penalty = 0
     let nonlinear = [...start]
     let regressors = this.regressors(nonlinear)
@@ -265,7 +287,7 @@ class Problem {
     const q = nonlinear.length
     for (let round = 0; round < 4; round++) {
       const estimate = estimateNoise(this.errors(round === 0 ? this.levelled(regressors, linear[0]) : this.outputs(regressors, linear)), Math.min(skip, Math.floor(this.samples / this.stretches.length / 10)))
-      noise = estimate.noise
+      noise = plain ? { a: new Float64Array(0) } : estimate.noise
       this.penalty = estimate.variance / this.span ** 2
       linear = this.linearFit(regressors, noise)
       let cost = this.cost(regressors, linear, noise)
@@ -310,7 +332,7 @@ class Problem {
     const cost = this.cost(regressors, linear, noise)
     const degrees = this.samples - this.stretches.length * skip - total
     const fisher = Float64Array.from({ length: total }, (_, i) => inverse[i * (total + 1)] * cost / degrees)
-    return { nonlinear, linear, noise, sumOfSquares: cost, variances: jackknife(normal, blocks, fisher), parameters: total }
+    return { nonlinear, linear, noise, plain, sumOfSquares: cost, variances: jackknife(normal, blocks, fisher), parameters: total }
   }
 
   private cost(regressors: Float64Array[][], linear: Float64Array, noise: NoiseModel): number {
@@ -437,7 +459,7 @@ class Problem {
       fitPercent: 100 * (1 - Math.sqrt(wrong / all)),
       criterion: this.samples * Math.log(power / used) + total * Math.log(this.samples),
       akaike: this.samples * Math.log(power / used) + 2 * total,
-      noiseOrder: noise.a.length, residualStandardDeviation: Math.sqrt(power / used), residualCorrelation: worst, samples: this.samples,
+      plain: solution.plain, noiseOrder: noise.a.length, residualStandardDeviation: Math.sqrt(power / used), residualCorrelation: worst, samples: this.samples,
       simulated: outputs.map(padded), residuals: white.map(padded),
     }
   }
