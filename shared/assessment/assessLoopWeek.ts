@@ -41,6 +41,7 @@ export interface AssessOptions {
 
 /** Below this the record holds too little to look for patterns. */
 const LEAST_SAMPLES = 64
+const LEAST_SETTLINGS = 8
 /** The stretch on which shape and valve are judged. */
 const MOST_CYCLES = 90
 const MOST_SAMPLES = 4000
@@ -106,7 +107,11 @@ export function assessLoopWeek(record: LoopRecord, setup: LoopSetup, week: WeekF
 
   const features = gatherFeatures({ setup, prepared, series, ledger, oscillations: pattern ? [pattern, ...oscillations.slice(1)] : [], shape, error: character, reading, stick, slip, halves, panel, upsets })
   options.features?.(features)
-  const judged = judge({ setup, prepared, ledger, features, oscillations, meaningful, compression, tooSlow, enough })
+  const tooShort = !enough ? 'Too few samples in a normal mode and away from the limits to look for a pattern.'
+    : !pattern && series.used * series.intervalS < LEAST_SETTLINGS * setup.settlingS
+      ? `The record holds only ${(series.used * series.intervalS / setup.settlingS).toPrecision(2)} settling horizons in a normal mode; ${LEAST_SETTLINGS} are needed to judge it.`
+      : null
+  const judged = judge({ setup, prepared, ledger, features, oscillations, meaningful, compression, tooSlow, tooShort, timeInTolerance: explain.measures.timeInTolerance })
   if (isInsufficient(panel.stiction)) explain.withholdAll(['apparentStiction', 'apparentStictionLow', 'apparentStictionHigh'], sentence(panel.stiction.reason))
   else if (judged.valveLikely) {
     const p = { opSpan, periodS: pattern?.periodS ?? null }

@@ -8,7 +8,7 @@
  */
 import type { EvidenceItem, Finding, LoopSetup, Oscillation, Verdict } from '../types'
 import type { Ledger } from '../ledger/buildLedger'
-import type { PreparedRecord } from '../preparation/prepareRecord'
+import { AT_HIGH, AT_LOW, FROZEN, OFF_NORMAL, type PreparedRecord } from '../preparation/prepareRecord'
 import { EVIDENCE_TEXTS } from './evidenceTexts'
 import type { FeatureValues } from './gatherFeatures'
 import { posteriorOf, type Posterior } from './likelihoods'
@@ -26,8 +26,9 @@ export interface Facts {
   compression: string | null
   /** why the sampling cannot show a cause, or null */
   tooSlow: string | null
-  /** enough samples in normal mode to look for patterns */
-  enough: boolean
+  /** why the record is too short to look for patterns, or null */
+  tooShort: string | null
+  timeInTolerance: number | null
 }
 
 export interface Judgement {
@@ -50,6 +51,8 @@ const LEAST_WITHOUT_LOSS = 0.7
 const LEAST_VALVE = 0.65
 
 const SUREST_ALONE = 0.92
+/** Noise is a finding of its own from this share of the tolerance (standard deviation; ours). */
+const NOISE_THAT_MATTERS = 0.3
 
 const HUNTING: Verdict[] = ['huntingTuning', 'huntingValve', 'huntingExternal']
 
@@ -69,19 +72,18 @@ const STATEMENTS: Readonly<Record<Verdict, string>> = {
 const UNEVEN_VALVE = 'The valve most likely sticks, though the loop does not swing evenly.'
 
 export function judge(facts: Facts): Judgement {
-  const { setup, ledger, features, oscillations, compression, tooSlow, enough, prepared } = facts
+  const { setup, ledger, features, oscillations, compression, tooSlow, tooShort, prepared } = facts
   const { hours } = ledger
   const inRecord = ledger.states.length - hours.noData - hours.down
-  if (prepared.n === 0 || inRecord === 0) {
-    return cannotTell(prepared.n === 0 ? 'There is no sample in this week.' : hours.down > 0 ? 'The loop was down, or its data are missing, all week.' : 'No hour is at least half covered by data.', [], false)
-  }
-  const counted: Finding[] = [
+  if (prepared.n === 0) return cannotTell('There is no sample in this week.', [], false)
+  if (inRecord === 0 && hours.down > 0) return cannotTell('The loop was down, or its data are missing, all week.', [], false)
+  const counted: Finding[] = inRecord === 0 ? countedInShortRecord(prepared) : [
     countedFinding('sensor', hours.sensor, inRecord, `PV was frozen, bad or out of range for ${h(hours.sensor)}.`),
     countedFinding('manual', hours.manual, inRecord, `The loop was outside its normal modes for ${h(hours.manual)}.`),
     countedFinding('saturated', hours.saturated, inRecord, `The output stood at a limit for ${h(hours.saturated)}.`),
   ].filter(f => f.hours > 0).sort((a, b) => b.hours - a.hours)
   // an hour or two of manual in a week is daily work, not a verdict
-  const worst = counted.find(f => f.hours >= Math.max(Math.min(2, inRecord), 0.04 * inRecord))
+  const worst = inRecord === 0 ? counted[0] : counted.find(f => f.hours >= Math.max(Math.min(2, inRecord), 0.04 * inRecord))
 
   const posterior = posteriorOf(features)
   const inferred = inferredFinding(facts, posterior)
@@ -89,8 +91,8 @@ export function judge(facts: Facts): Judgement {
   const findings = [...counted]
 
   let soft: Judgement | null = null
-  if (!enough) {
-    if (!worst) return cannotTell('Too few samples in a normal mode and away from the limits to look for a pattern.', findings, false)
+  if (tooShort) {
+    if (!worst) return cannotTell(tooShort, findings, false)
   }
   else if (compression) soft = cannotTell(compression, findings, false)
   else if (tooSlow) soft = cannotTell(tooSlow, findings, false)
@@ -99,7 +101,7 @@ export function judge(facts: Facts): Judgement {
 
   if (soft) {
     const softHours = soft.findings[0]?.hours ?? 0
-    if (worst && worst.hours >= Math.max(softHours, 1)) {
+    if (worst && (inRecord === 0 || worst.hours >= Math.max(softHours, 1))) {
       findings.push(...soft.findings.filter(f => f.hours > 0 || (f.verdict !== 'steady' && f.confidence >= LEAST_WITHOUT_LOSS)))
     }
     else {
@@ -128,6 +130,24 @@ function countedFinding(verdict: Verdict, hours: number, inRecord: number, text:
   }
 }
 
+/** A record too short to fill half of an hour: no hour is lost, but what held for most of it still speaks first. */
+function countedInShortRecord({ flags, pv, n }: PreparedRecord): Finding[] {
+  let manual = 0
+  let limit = 0
+  let sensor = 0
+  for (let i = 0; i < n; i++) {
+    if (flags[i] & OFF_NORMAL) manual++
+    if (flags[i] & (AT_LOW | AT_HIGH)) limit++
+    if (pv[i] !== pv[i] || (flags[i] & FROZEN) !== 0) sensor++
+  }
+  const of = (verdict: Verdict, count: number, text: string): Finding[] => count > n / 2 ? [{ ...countedFinding(verdict, 0, 1, text), evidence: [{ measure: 'Share of the record', value: round(count / n), threshold: 0.5, says: 'for', weight: 2, source: 'Definition', text }] }] : []
+  return [
+    ...of('sensor', sensor, 'PV was frozen, bad or out of range for most of the record.'),
+    ...of('manual', manual, 'The loop was outside its normal modes for most of the record.'),
+    ...of('saturated', limit, 'The output stood at a limit for most of the record.'),
+  ]
+}
+
 /** What the likelihood table says, turned into a verdict or into the reason why there is none. */
 function inferredFinding(facts: Facts, posterior: Posterior): Judgement {
   const { ledger, oscillations, meaningful, prepared, features } = facts
@@ -152,11 +172,17 @@ function inferredFinding(facts: Facts, posterior: Posterior): Judgement {
   if (p < LEAST_CONFIDENCE) return undecided(`The evidence points two ways: ${NAMES[verdict]} (${percent(p)}) or ${NAMES[classes[order[1]]]} (${percent(probability[order[1]])}).`)
   if (verdict === 'huntingValve' && p < LEAST_VALVE) return undecided(`A sticking valve is possible (${percent(p)}), but not sure enough to name it.`)
   if (HUNTING.includes(verdict) && !hunts && p < LEAST_WITHOUT_LOSS) return undecided('There is a small swing whose cause is not clear.')
-  if (verdict === 'sluggish' && hours.offTarget === 0) {
-    return { verdict: 'steady', confidence: round(p), verdictReason: 'The loop keeps within its tolerance, though it works off upsets slowly.', findings: [finding(top), ...others], evidence: evidenceOf(facts, posterior, top), nextActions: NEXT_ACTIONS.steady, valveLikely: false }
+  const harmless = hours.offTarget > 0 ? null
+    : verdict === 'sluggish' ? 'The loop keeps within its tolerance, though it works off upsets slowly.'
+      : verdict === 'noise' && !(features.noiseOverTolerance >= NOISE_THAT_MATTERS) ? 'The loop keeps within its tolerance; what is left is mostly noise.'
+        : verdict === 'sensor' && !(features.wildShare > 0) ? 'The loop keeps within its tolerance, though its noise comes in bursts.'
+          : null
+  if (harmless) {
+    return { verdict: 'steady', confidence: round(p), verdictReason: harmless, findings: [finding(top), ...others], evidence: evidenceOf(facts, posterior, top), nextActions: NEXT_ACTIONS.steady, valveLikely: false }
   }
   if (verdict === 'steady' && hours.hunting > 0.1 * (hours.hunting + hours.offTarget + hours.steady)) return undecided(`The loop hunted for ${h(hours.hunting)}, but the pattern fits no cause well.`)
   if (verdict === 'steady' && features.offTargetShare > 0.2) return undecided(`The loop was off target for ${h(hours.offTarget)}, without a pattern that names a cause.`)
+  if (verdict === 'steady' && hours.steady === 0 && facts.timeInTolerance !== null && facts.timeInTolerance < 0.8) return undecided(`The error was outside the tolerance for ${percent(1 - facts.timeInTolerance)} of the record, without a pattern that names a cause.`)
   const own = finding(top)
   const extra = own.hours > 0 ? ` It cost ${h(own.hours)}.` : verdict === 'steady' ? '' : ' It cost no hour so far.'
   return {

@@ -63,7 +63,7 @@ function facts(change: Partial<Facts> & { manual?: number, limit?: number, hunti
   return {
     setup, prepared, ledger: buildLedger(prepared, setup.tolerance, week, episodes, []), features: nothing(),
     oscillations: change.hunting ? [{ periodS: 600, periodSdS: 1, amplitude: 3, regularity: 5, decay: 0.9, strength: 0.9, episodes }] : [],
-    meaningful: 0.5, compression: null, tooSlow: null, enough: true, ...change,
+    meaningful: 0.5, compression: null, tooSlow: null, tooShort: null, timeInTolerance: 1, ...change,
   }
 }
 
@@ -99,7 +99,7 @@ describe('judge', () => {
       expect([j.verdict, j.verdictReason, j.valveLikely]).toEqual(['cannotTell', reason, false])
       expect(j.findings.find(f => f.verdict === 'cannotTell')!.reason).toBe(reason)
     }
-    expect(judge(facts({ enough: false })).verdict).toBe('cannotTell')
+    expect(judge(facts({ tooShort: 'Too short.' })).verdict).toBe('cannotTell')
     // a thinned record still shows that the loop stood in manual
     expect(judge(facts({ manual: 40, compression: 'The historian has thinned the record.' })).verdict).toBe('manual')
   })
