@@ -1,7 +1,7 @@
 import { ref, shallowRef, watch } from 'vue'
 import { weeksBetween } from '#shared/assessment/week/isoWeek'
 import type { LoopProof, TicketProof, TicketView } from '#shared/types/tickets'
-import type { TrendData } from './useTrend'
+import { fetchTrend, type TrendData } from './useTrend'
 
 export interface ProofSeries { before: TrendData | null, after: TrendData | null, ribbons: { week: string, ribbon: string, when: 'before' | 'after' }[] }
 const MOST_DRAWN = 6
@@ -20,10 +20,10 @@ export function useProof(ticket: () => TicketView | null, zone: () => string) {
 
   async function seriesOf(p: LoopProof): Promise<ProofSeries> {
     const url = `/api/loops/${encodeURIComponent(p.tag)}`
-    const trend = (w: LoopProof['before']) => w.toMs > w.fromMs ? api.get<TrendData>(`${url}/trend`, { from: new Date(w.fromMs).toISOString(), to: new Date(w.toMs).toISOString(), points: 1200 }).catch(() => null) : null
+    const trend = (w: LoopProof['before']) => w.toMs > w.fromMs ? fetchTrend(p.tag, { from: w.fromMs, to: w.toMs }, 1200).catch(() => null) : null
     const weeks = async (w: LoopProof['before'], when: 'before' | 'after') => await Promise.all(weeksBetween(w.fromMs, w.toMs, zone()).slice(0, 3).map(async (week) => {
-      const loop = await api.get<{ ribbon?: string, row?: { ribbon?: string } }>(url, { week }).catch(() => null)
-      return { week, when, ribbon: loop?.ribbon ?? loop?.row?.ribbon ?? '' }
+      const loop = await api.get<{ ribbon: string | null }>(url, { week }).catch(() => null)
+      return { week, when, ribbon: loop?.ribbon ?? '' }
     }))
     const [before, after, first, second] = await Promise.all([trend(p.before), trend(p.after), weeks(p.before, 'before'), weeks(p.after, 'after')])
     return { before, after, ribbons: [...first, ...second].filter(r => r.ribbon) }

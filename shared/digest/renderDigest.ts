@@ -1,6 +1,6 @@
 import { RIBBON_LETTERS } from '../assessment/types'
 import { formatDuration } from '../format/duration'
-import { formatWeek } from '../format/date'
+import { formatDate, formatWeek } from '../format/date'
 import { VERDICT_WORDS } from '../format/words'
 import { coarseCells } from '../ribbon/coarseCells'
 import { STATE_COLOURS } from '../ribbon/colours'
@@ -61,7 +61,7 @@ export function renderDigest(m: DigestModel, unsubscribeUrl: string): RenderedDi
   const sentence = digestSentence(m)
   const url = (path: string) => `${m.publicUrl}${path}`
   const loopsUrl = url(`/loops?week=${m.week}`)
-  const due = m.tickets.map(t => ({ id: t.id, line: `T-${t.id} ${t.title}, ${STATE_WORDS[t.state]}${t.dueOn ? `, due ${t.dueOn}${t.overdue ? ' (overdue)' : ''}` : ''}${t.assignee ? `, ${t.assignee}` : ''}` }))
+  const due = m.tickets.map(t => ({ id: t.id, line: `T-${t.id} ${t.title}, ${STATE_WORDS[t.state]}${t.dueOn ? `, due ${formatDate(t.dueOn, 'UTC')}${t.overdue ? ' (overdue)' : ''}` : ''}${t.assignee ? `, ${t.assignee}` : ''}` }))
   const wins = m.wins.map(w => ({ id: w.ticketId, line: `T-${w.ticketId} ${w.title}: ${w.hoursPerWeek.toFixed(0)} h a week won back (${w.outcome ? OUTCOME_WORDS[w.outcome] : 'closed'}${w.provisional ? ', provisional' : ''})` }))
   const slid = m.slidBack.map(b => ({ id: b.followUpId, line: `T-${b.followUpId} ${b.title}` }))
   const groups = m.groups.map(g => `Group ${g.letter}: ${g.members} loops hunt together with a period of ${formatDuration(g.periodS)}${g.source ? `; the likely source is ${g.source}` : ''}.`)
