@@ -59,8 +59,18 @@ export function findGroups(candidates: readonly GroupCandidate[], { fromMs, toMs
   }
   const clusters = new Map<number, number[]>()
   loops.forEach((_, k) => clusters.set(root(k), [...(clusters.get(root(k)) ?? []), k]))
-  return [...clusters.values()].filter(c => c.length >= 2).map(cluster => describe(cluster, loops, waves, fromMs, toMs)).filter(g => g !== null)
+  const found = [...clusters.values()].filter(c => c.length >= 2).map(cluster => describe(cluster, loops, waves, fromMs, toMs)).filter(g => g !== null)
     .sort((a, b) => b.members.length - a.members.length || a.periodS - b.periodS)
+  return found.filter(g => !found.some(larger => isHarmonicOf(g, larger)))
+}
+
+/** The harmonics of a common wave are locked to each other too; they are no group of their own. */
+function isHarmonicOf(g: LoopGroup, larger: LoopGroup): boolean {
+  const ratio = larger.periodS / g.periodS
+  const order = Math.round(ratio)
+  if (g === larger || order < 2 || order > 7 || Math.abs(ratio / order - 1) > 0.08) return false
+  const tags = new Set(larger.members.map(m => m.tag))
+  return g.members.every(m => tags.has(m.tag))
 }
 
 interface Waves { compare: (i: number, j: number) => ReturnType<typeof phaseCoherence> | null }

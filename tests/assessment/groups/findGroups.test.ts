@@ -113,6 +113,12 @@ describe('findGroups', () => {
     }
     expect(grouped).toBeLessThan(5)
   })
+  it('does not report the harmonics of a group as a group of its own', () => {
+    const common = wanderingPhase(3, 1200, 0.2)
+    const third = common.map(p => 3 * p)
+    const groups = findGroups(['A', 'B', 'C'].flatMap((tag, k) => [loop(tag, common, 40 * k, 1200, 20 + k), ...(k < 2 ? [loop(tag, third, 10 * k, 400, 30 + k, { strength: 0.1 })] : [])]), span)
+    expect(groups.map(g => g.members.length)).toEqual([3])
+  })
   it('answers nothing on nothing, on one loop and on a span of a few cycles', () => {
     expect(findGroups([], span)).toEqual([])
     expect(findGroups([loop('A', wanderingPhase(1, 900, 0.1), 0, 900, 1)], span)).toEqual([])
