@@ -11,12 +11,20 @@ export const useWeekStore = defineStore('week', () => {
   const loaded = ref(false)
   const latest = computed(() => weeks.value[0]?.week ?? null)
 
-  async function load(): Promise<void> {
-    const answer = await useApi().get<WeeksAnswer>('/api/weeks')
-    site.value = answer.site
-    zone.value = answer.zone
-    weeks.value = answer.weeks
-    loaded.value = true
+  let loadedAt = 0
+
+  /** Asks again when the last answer is older than `olderThanMs`: an import may have brought a week. */
+  async function load(olderThanMs = 0): Promise<void> {
+    if (loaded.value && Date.now() - loadedAt < olderThanMs) return
+    loadedAt = Date.now()
+    try {
+      const answer = await useApi().get<WeeksAnswer>('/api/weeks')
+      site.value = answer.site
+      zone.value = answer.zone
+      weeks.value = answer.weeks
+    }
+    // without the list the pages still ask for the newest week, and say themselves what is wrong
+    finally { loaded.value = true }
   }
   return { site, zone, weeks, chosen, latest, loaded, load }
 })
