@@ -1,4 +1,5 @@
 import type { LoopWeekAssessment, Verdict } from '../assessment/types'
+import type { ControllerForm } from '../control/types'
 import { formatDuration } from './duration'
 import { formatNumber } from './number'
 import type { Piece } from './sentence'
@@ -12,10 +13,11 @@ const causes: Partial<Record<Verdict, string>> = {
 }
 
 /** What is wrong with a loop in a week and how sure that is, as the page of the loop opens. */
-export function loopSentence(tag: string, a: Pick<LoopWeekAssessment, 'verdict' | 'confidence' | 'verdictReason' | 'lostHours' | 'measures' | 'hours'>): Piece[] {
+export function loopSentence(tag: string, a: Pick<LoopWeekAssessment, 'verdict' | 'confidence' | 'verdictReason' | 'lostHours' | 'measures' | 'hours'>, form?: ControllerForm): Piece[] {
   const sure = a.verdict === 'cannotTell' ? [] : [plain(` We are ${Math.round(a.confidence * 100)} % sure.`)]
   const lost = counted(a.lostHours, 'hour')
   const period = a.measures.oscillationPeriod
+  if (form === 'onOff' && a.verdict === 'huntingTuning') return [strong(tag), plain(period ? ` switches on and off every ${formatDuration(period)} and ` : ' switches on and off and '), strong('swings beyond its tolerance'), plain(`; ${lost} lost.`), ...sure]
   switch (a.verdict) {
     case 'steady':
       return a.lostHours === 0 ? [strong(tag), plain(' was steady all week.')] : [strong(tag), plain(` was steady but for ${lost}.`)]
