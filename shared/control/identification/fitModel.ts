@@ -20,7 +20,7 @@ export interface FitOptions {
    * holds the newest noise of PV, so dead times below one interval are not tried (with `hold: 'first'`).
    */
   excitation?: 'setpointStep' | 'manualMove' | 'natural'
-  /** Half width of the 95 % interval over the value that gain and lag may have at most; 0.15 when left out. */
+  /** Half width of the 95 % interval over the value that gain and lag may have at most; 0.13 when left out. */
   maximumRelativeHalfWidth?: number
 }
 
@@ -71,7 +71,7 @@ export interface InsufficientFit { status: 'insufficient', reason: string, best?
  * Checked on simulated loops whose truth is known: tests/control/identification.
  */
 export function fitModel(stretches: readonly FitStretch[], options: FitOptions): ModelFit | InsufficientFit {
-  const { kind, interval, hold = 'first', excitation = 'natural', maximumRelativeHalfWidth = 0.15 } = options
+  const { kind, interval, hold = 'first', excitation = 'natural', maximumRelativeHalfWidth = 0.13 } = options
   if (!(interval > 0)) throw new RangeError(`fitModel: the interval must be positive, got ${interval}`)
   for (const { pv, op } of stretches) {
     if (pv.length !== op.length) throw new RangeError(`fitModel: PV has ${pv.length} samples and OP ${op.length}`)

@@ -26,7 +26,7 @@ export function compareTunings(
   common: Pick<ClosedLoopCase, 'model' | 'horizon' | 'step' | 'start' | 'outputLimits' | 'valve'> & { setpointChange: number, upsets: Upset[], changeAt?: number, noise?: { standardDeviation: number, interval: number, normalFor: () => () => number } },
 ): TuningPreview[] {
   const { setpointChange, upsets, noise, changeAt = 0, ...loop } = common
-  const maximumSteps = common.step === undefined ? 6000 : undefined
+  const maximumSteps = common.step === undefined ? 4000 : undefined
   return candidates.map(({ controller, setpointFilterTime }) => {
     const run = (scenario: Partial<ClosedLoopCase>) => {
       const base = { ...loop, maximumSteps, controller, setpointFilterTime, ...scenario }
