@@ -22,9 +22,13 @@ export async function buildDigest(db: Database, { week, areaIds, publicUrl, now 
   const inAWeek = dayIn(settings.zone, now.getTime() + 7 * DAY_MS)
   // tickets close and slide back in the days before the mail, not in the days that it reports on
   const since = new Date(now.getTime() - 7 * DAY_MS)
-  const [loops, groups, tickets, wins, slidBack, areas] = await Promise.all([
-    listDigestLoops(db, week, previousWeek(week), areaIds), listDigestGroups(db, week, areaIds), listDigestTickets(db, areaIds, today, inAWeek), listDigestWins(db, areaIds, since, now), listDigestSlideBacks(db, areaIds, since, now), listAreaNames(db, areaIds),
-  ])
+  // one after the other: inside a transaction there is one connection
+  const loops = await listDigestLoops(db, week, previousWeek(week), areaIds)
+  const groups = await listDigestGroups(db, week, areaIds)
+  const tickets = await listDigestTickets(db, areaIds, today, inAWeek)
+  const wins = await listDigestWins(db, areaIds, since, now)
+  const slidBack = await listDigestSlideBacks(db, areaIds, since, now)
+  const areas = await listAreaNames(db, areaIds)
   const known = loops.filter(l => l.lostBefore !== null)
   const lostHours = loops.reduce((sum, l) => sum + l.lostHours, 0)
   return {
