@@ -65,8 +65,10 @@ export function assessLoopWeek(record: LoopRecord, setup: LoopSetup, week: WeekF
 
   const step = n > 1 ? quantisationStep(middleOf(prepared.pv)) : { step: 0, factor: NaN }
   if (n > 1) for (const s of frozenSpans(prepared.t, prepared.pv, prepared.op, prepared.sp, { horizonS: setup.settlingS, opSpan })) for (let i = s.from; i < s.to; i++) flags[i] |= FROZEN
+  const compression = explainQuality(explain, prepared, step)
+  // on a thinned record an unchanged value may be the historian's, not the sensor's
+  if (compression) for (let i = 0; i < n; i++) flags[i] &= ~FROZEN
   const usableS = explainTime(explain, prepared, setup, edges)
-  const compression = explainQuality(explain, prepared.pv, step)
   explainError(explain, prepared, setup)
 
   const reading = readingCharacter(prepared, pvSpan, step.step)
@@ -260,7 +262,7 @@ function swingTooFast(prepared: PreparedRecord, series: AnalysisSeries | null, p
   if (period !== null) return period < 8 && series.factor === 1 ? say(period) : null
   const piece = nativePiece(prepared)
   const fast = piece ? fastSwing(piece) : null
-  return fast && fast.share > 0.4 ? say(fast.period) : null
+  return fast && fast.share > 0.33 ? say(fast.period) : null
 }
 
 /** The first piece of up to 4096 native samples in normal mode with nothing missing, 512 at least. */

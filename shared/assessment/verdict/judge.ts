@@ -82,8 +82,9 @@ export function judge(facts: Facts): Judgement {
     countedFinding('manual', hours.manual, inRecord, `The loop was outside its normal modes for ${h(hours.manual)}.`),
     countedFinding('saturated', hours.saturated, inRecord, `The output stood at a limit for ${h(hours.saturated)}.`),
   ].filter(f => f.hours > 0).sort((a, b) => b.hours - a.hours)
-  // an hour or two of manual in a week is daily work, not a verdict
-  const worst = inRecord === 0 ? counted[0] : counted.find(f => f.hours >= Math.max(Math.min(2, inRecord), 0.04 * inRecord))
+  // an hour or two of manual in a week is daily work, not a verdict; a dead sensor or a limit weighs more in a short record
+  const least = (v: Verdict) => Math.max(0.04 * inRecord, v === 'manual' ? Math.min(2, inRecord) : Math.min(2, Math.max(1, 0.2 * inRecord)))
+  const worst = inRecord === 0 ? counted[0] : counted.find(f => f.hours >= least(f.verdict))
 
   const posterior = posteriorOf(features)
   const inferred = inferredFinding(facts, posterior)
