@@ -7,11 +7,11 @@ import { pipeline } from 'node:stream/promises'
 import { parseArgs } from 'node:util'
 import pg from 'pg'
 import { from as copyFrom } from 'pg-copy-streams'
-import { decodeBlock } from '../db/blocks/decodeBlock'
+import { decodeBlocks } from '../db/blocks/decodeBlocks'
 import { findLoop, listLoops } from '../db/repositories/loops'
 import { insertDue, notifyWork } from '../db/repositories/loopWeekWrites'
 import { listBlocks } from '../db/repositories/trendBlocks'
-import { joinDays, loopTrend } from '../server/services/loops/loopTrend'
+import { loopTrend } from '../server/services/loops/loopTrend'
 import { thinTrend } from '../server/services/loops/thinTrend'
 import { startCluster } from '../scripts/lib/cluster.mjs'
 import { openDatabase } from '../db/knex'
@@ -21,10 +21,10 @@ import { numerics } from './numerics'
 import { nowMb, peakMb, Plant } from './plant'
 
 /** npm run bench [-- --quick] [-- --only reading,upload]: the ratios that the design promises, measured back to back. */
-const { values: args } = parseArgs({ options: { quick: { type: 'boolean', default: false }, only: { type: 'string' } } })
+const { values: args } = parseArgs({ options: { quick: { type: 'boolean', default: false }, only: { type: 'string' }, times: { type: 'string' } } })
 const wanted = args.only?.split(',')
 const runs = (name: string) => !wanted || wanted.includes(name)
-const TIMES = args.quick ? 1 : 5
+const TIMES = args.times ? Number(args.times) : args.quick ? 1 : 5
 const folder = mkdtempSync(join(tmpdir(), 'fettle-bench-files-'))
 const clusterFolder = `/var/tmp/fettle-bench-${process.pid}`
 const file = (name: string) => join(folder, name)
@@ -100,7 +100,8 @@ async function upload(plant: Plant): Promise<void> {
     return performance.now() - started
   }
   const oneCopy = async () => {
-    await plant.db.raw('drop table if exists sample_rows; checkpoint')
+    await plant.db.raw('drop table if exists sample_rows')
+    await plant.db.raw('checkpoint')
     const client = new pg.Client({ connectionString: plant.url })
     await client.connect()
     const started = performance.now()
@@ -128,7 +129,7 @@ async function upload(plant: Plant): Promise<void> {
   else { await oneCopy() }
   if (runs('storing')) {
     const size = async (table: string) => Number((await plant.db.raw('select pg_total_relation_size(?) as n', [table])).rows[0].n)
-    await plant.db.raw('vacuum (full) trend_blocks; vacuum (full) sample_rows')
+    for (const table of ['trend_blocks', 'sample_rows']) await plant.db.raw(`vacuum (full) ${table}`)
     const [blocks, rows] = [await size('trend_blocks'), await size('sample_rows')]
     report('disk of a stored week', rows / blocks, `${mb(blocks)} MB as blocks against ${mb(rows)} MB as rows with their primary key`, { least: 20 }, { blocks, rows })
   }
@@ -141,7 +142,7 @@ async function upload(plant: Plant): Promise<void> {
 async function writeRows(plant: Plant, path: string): Promise<void> {
   const out = createWriteStream(path, { highWaterMark: 1 << 20 })
   for (const [k, loop] of (await listLoops(plant.db)).entries()) {
-    const { t, sp, pv, op, mode, modeNames } = joinDays((await listBlocks(plant.db, [loop.id], START, END)).map(decodeBlock), START, END)
+    const { t, sp, pv, op, mode, modeNames } = decodeBlocks(await listBlocks(plant.db, [loop.id], START, END), START, END)
     let text = ''
     for (let i = 0; i < t.length; i++) text += `${k},${new Date(t[i]).toISOString()},${sp![i]},${pv![i]},${op![i]},${modeNames[mode![i]]}\n`
     if (!out.write(text)) await once(out, 'drain')
@@ -153,7 +154,8 @@ async function writeRows(plant: Plant, path: string): Promise<void> {
 /** One loop-week to 1,500 points. */
 async function drawing(plant: Plant): Promise<void> {
   const { db } = plant
-  await db.raw('analyze sample_rows; analyze trend_blocks')
+  await db.raw('analyze sample_rows')
+  await db.raw('analyze trend_blocks')
   const tag = (await listLoops(db))[3].tag
   const loop = (await findLoop(db, tag))!
   const k = (await listLoops(db)).findIndex(l => l.id === loop.id)
@@ -258,7 +260,8 @@ async function fleet(plant: Plant): Promise<void> {
     await db.raw(`insert into loops (tag, type, pv_low, pv_high) select 'XIC-' || g, 'flow', 0, 100 from generate_series(?::int, ?::int) g`, [from + 1, to])
     await db.raw(`insert into loop_weeks (loop_id, ${columns}) select n.id, ${columns} from (select id, row_number() over (order by id) as k from loops where tag like 'XIC-%') n
       join (select *, row_number() over (order by loop_id) as k from loop_weeks w where exists (select from loops where loops.id = w.loop_id and tag not like 'XIC-%')) w on w.k = 1 + n.k % 20 on conflict do nothing`)
-    await db.raw('analyze loops; analyze loop_weeks')
+    await db.raw('analyze loops')
+    await db.raw('analyze loop_weeks')
     const times: number[] = []
     for (let i = 0; i < (args.quick ? 5 : 21); i++) {
       const started = performance.now()

@@ -51,7 +51,9 @@ export function decodeColumn(column: Uint8Array, n: number, out: Float64Array = 
         }
         if (token > 1) {
           const z = token - 2
-          scaled += z % 2 === 0 ? z / 2 : -(z + 1) / 2
+          // whole numbers of 31 bits have a quicker way
+          if (z < 0x40000000) scaled += (z >>> 1) ^ -(z & 1)
+          else scaled += z % 2 === 0 ? z / 2 : -(z + 1) / 2
           out[k] = scaled / power
         }
         else if (token === 0) { out[k] = NaN }

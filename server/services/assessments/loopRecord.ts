@@ -1,9 +1,7 @@
-import { decodeColumn } from '../../../db/blocks/decodeColumn'
-import { decodeModes } from '../../../db/blocks/decodeModes'
-import { decodeTimes } from '../../../db/blocks/decodeTimes'
-import { BLOCK_CODEC, type TrendBlock } from '../../../db/blocks/types'
+import { decodeBlocks } from '../../../db/blocks/decodeBlocks'
+import { pooledFloats } from '../../../db/blocks/pool'
+import type { TrendBlock } from '../../../db/blocks/types'
 import { MODE_UNKNOWN, type LoopRecord } from '../../../shared/assessment/types'
-import { pooledBytes, pooledFloats } from '../imports/scan/pool'
 
 /**
  * Blocks of one loop, in order of day, as one record of [fromMs, toMs). Its arrays are views of memory that the next
@@ -11,47 +9,10 @@ import { pooledBytes, pooledFloats } from '../imports/scan/pool'
  * @param normalModes a mode given as a number says nothing unless the loop's set-up names that number; then it is unknown
  */
 export function loopRecord(blocks: TrendBlock[], fromMs: number, toMs: number, normalModes: string[]): LoopRecord {
-  const total = blocks.reduce((n, b) => n + b.n, 0)
-  const t = pooledFloats('record.t', total)
-  const has = (signal: 'pv' | 'sp' | 'op' | 'mode') => blocks.some(b => b[signal] !== null)
-  const columns = { pv: pooledFloats('record.pv', total), sp: has('sp') ? pooledFloats('record.sp', total) : null, op: has('op') ? pooledFloats('record.op', total) : null }
-  const mode = has('mode') ? pooledBytes('record.mode', total) : null
-  const modeNames: string[] = []
-  let at = 0
-  for (const block of blocks) {
-    if (block.codec !== BLOCK_CODEC) throw new Error(`loopRecord: codec ${block.codec} is not known to this version`)
-    decodeTimes(block, t, at)
-    for (const signal of ['pv', 'sp', 'op'] as const) {
-      const out = columns[signal]
-      if (!out) continue
-      if (block[signal]) decodeColumn(block[signal], block.n, out, at)
-      else out.fill(NaN, at, at + block.n)
-    }
-    if (mode) {
-      if (block.mode) {
-        decodeModes(block.mode, block.n, mode, at)
-        const codes = block.modeNames.map(name => meaningful(name, normalModes) ? codeOf(name, modeNames) : MODE_UNKNOWN)
-        if (codes.some((code, i) => code !== i)) for (let i = at; i < at + block.n; i++) if (mode[i] !== MODE_UNKNOWN) mode[i] = codes[mode[i]] ?? MODE_UNKNOWN
-      }
-      else { mode.fill(MODE_UNKNOWN, at, at + block.n) }
-    }
-    at += block.n
-  }
-  let from = 0
-  let to = total
-  while (from < to && t[from] < fromMs) from++
-  while (to > from && t[to - 1] >= toMs) to--
-  const record: LoopRecord = {
-    t: t.subarray(from, to), pv: columns.pv.subarray(from, to), sp: columns.sp?.subarray(from, to) ?? null, op: columns.op?.subarray(from, to) ?? null,
-    mode: mode?.subarray(from, to) ?? null, modeNames,
-  }
-  return alignSignals(record)
-}
-
-const meaningful = (name: string, normalModes: string[]) => !/^[\d.]+$/.test(name) || normalModes.includes(name)
-const codeOf = (name: string, names: string[]): number => {
-  const known = names.indexOf(name)
-  return known >= 0 ? known : names.push(name) - 1
+  const { t, pv, sp, op, mode, modeNames } = decodeBlocks(blocks, fromMs, toMs)
+  const meaningless = modeNames.map(name => /^[\d.]+$/.test(name) && !normalModes.includes(name))
+  if (mode && meaningless.includes(true)) for (let i = 0; i < mode.length; i++) if (meaningless[mode[i]]) mode[i] = MODE_UNKNOWN
+  return alignSignals({ t, pv: pv ?? pooledFloats('record.none', t.length).subarray(0, t.length).fill(NaN), sp, op, mode, modeNames })
 }
 
 /**

@@ -5,7 +5,7 @@ import { mergeBlock } from '../../../db/blocks/mergeBlock'
 import { mergeSamples } from '../../../db/blocks/mergeSamples'
 import { DAY_MS, MODE_UNKNOWN, type DaySamples, type TrendBlock } from '../../../db/blocks/types'
 import type { LongSink } from './scan/longSink'
-import { pooledFloats, pooledInts, pooledBytes } from './scan/pool'
+import { pooledFloats, pooledInts, pooledBytes } from '../../../db/blocks/pool'
 import type { SignalName } from './scan/signalNames'
 import type { WideSink } from './scan/wideSink'
 

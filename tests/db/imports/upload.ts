@@ -2,14 +2,13 @@ import { copyFileSync, mkdirSync, mkdtempSync, rmSync, statSync, writeFileSync }
 import { tmpdir } from 'node:os'
 import { join } from 'node:path'
 import type { Knex } from 'knex'
-import { decodeBlock } from '../../../db/blocks/decodeBlock'
+import { decodeBlocks } from '../../../db/blocks/decodeBlocks'
 import { findImport, type ImportRow } from '../../../db/repositories/imports'
 import { findLoop } from '../../../db/repositories/loops'
 import { listBlocks } from '../../../db/repositories/trendBlocks'
 import type { ImportOptions } from '../../../server/services/imports/importOptions'
 import { readImport } from '../../../server/services/imports/readImport'
 import { recordUpload } from '../../../server/services/imports/receiveUpload'
-import { joinDays } from '../../../server/services/loops/loopTrend'
 
 export const dataDir = mkdtempSync(join(tmpdir(), 'fettle-ingest-'))
 mkdirSync(join(dataDir, 'uploads'))
@@ -31,7 +30,7 @@ export async function upload(db: Knex, source: { file: string } | { text: string
 export async function stored(db: Knex, tag: string) {
   const loop = await findLoop(db, tag)
   if (!loop) return null
-  const all = joinDays((await listBlocks(db, [loop.id], 0, Date.UTC(2100, 0))).map(decodeBlock), 0, Infinity)
+  const all = decodeBlocks(await listBlocks(db, [loop.id], 0, Date.UTC(2100, 0)), 0, Infinity)
   const plain = (x: Float64Array | null) => x && Array.from(x)
   return { t: Array.from(all.t), pv: plain(all.pv), sp: plain(all.sp), op: plain(all.op), mode: all.mode && Array.from(all.mode, code => all.modeNames[code] ?? null) }
 }

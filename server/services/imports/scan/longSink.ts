@@ -1,4 +1,4 @@
-import { pooledFloats, pooledInts } from './pool'
+import { pooledFloats, pooledInts } from '../../../../db/blocks/pool'
 
 /** Values of a long file in the order of its lines, in memory that is used again. */
 export class LongSink {

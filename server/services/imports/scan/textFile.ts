@@ -2,7 +2,7 @@ import { open, type FileHandle } from 'node:fs/promises'
 import { createReadStream } from 'node:fs'
 import { createGunzip, createInflateRaw } from 'node:zlib'
 import type { Readable } from 'node:stream'
-import { pooledBytes } from './pool'
+import { pooledBytes } from '../../../../db/blocks/pool'
 import { UnreadableFile } from './unreadableFile'
 
 export type Compression = 'none' | 'gzip' | 'zip' | 'parquet'

@@ -1,5 +1,5 @@
 import { DAY_MS } from '../../../../db/blocks/types'
-import { pooledBytes, pooledFloats } from './pool'
+import { pooledBytes, pooledFloats } from '../../../../db/blocks/pool'
 
 /** Rows of a wide file, column by column, in memory that is used again for each stretch of time. */
 export class WideSink {
