@@ -89,7 +89,7 @@ function fit(loops: CaseResult[]): LikelihoodTable {
   const counts = CLASSES.map((_, c) => y.filter(v => v === c).length)
   const weight = y.map(c => N / K / counts[c])
   let w = new Float64Array(size)
-  let v = new Float64Array(size)
+  const v = new Float64Array(size)
   const step = 4 / (FEATURES.length + 1)
   for (let it = 0; it < 800; it++) {
     const g = new Float64Array(size)

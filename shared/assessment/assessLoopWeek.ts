@@ -18,6 +18,7 @@ import { setpointActivity } from './preparation/setpointActivity'
 import { frozenSpans } from './quality/frozenSpans'
 import { quantisationStep } from './quality/quantisationStep'
 import { isInsufficient, type LoopRecord, type LoopSetup, type LoopWeekAssessment, type Oscillation, type TimeSpan, type WeekFrame } from './types'
+import { controllerSign } from './verdict/controllerSign'
 import { cycleShape } from './verdict/cycleShape'
 import { errorCharacter } from './verdict/errorCharacter'
 import { fastSwing } from './verdict/fastSwing'
@@ -97,7 +98,9 @@ export function assessLoopWeek(record: LoopRecord, setup: LoopSetup, week: WeekF
   const character = enough ? errorCharacter(series) : null
   const tooSlow = swingTooFast(prepared, home, period)
   const panelSilent = setup.form === 'onOff' ? 'The valve tests are not for on-off loops.' : compression ?? tooSlow
-  const processSign = setup.action === 'reverse' ? 1 : -1
+  const declared = setup.action === 'reverse' ? 1 : -1
+  // PV rises with OP where the controller is reverse acting
+  const processSign = home && stretch && u ? controllerSign(home.error.subarray(stretch.begin, stretch.end), u, declared) : declared
   const stick = y && u && character && !panelSilent ? stickFit(y, u, processSign, (3 * (pattern?.periodS ?? 2 * character.staySideS)) / home!.intervalS) : null
   const slip = y && u && home && stretch && !panelSilent ? slipEvents(y, home.pv.subarray(stretch.begin, stretch.end), u, processSign, noise / Math.sqrt(home.factor)) : null
   const panel = valvePanel(y, u, period, setup.type, opSpan, stick, slip, panelSilent)

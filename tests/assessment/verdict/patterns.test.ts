@@ -2,6 +2,7 @@ import { describe, expect, it } from 'vitest'
 import { analysisSeries } from '../../../shared/assessment/preparation/analysisSeries'
 import { prepareRecord } from '../../../shared/assessment/preparation/prepareRecord'
 import { seededRandom } from '../../../shared/assessment/statistics/seededRandom'
+import { controllerSign } from '../../../shared/assessment/verdict/controllerSign'
 import { fastSwing } from '../../../shared/assessment/verdict/fastSwing'
 import { halfCycles } from '../../../shared/assessment/verdict/halfCycles'
 import { readingCharacter } from '../../../shared/assessment/verdict/readingCharacter'
@@ -57,6 +58,22 @@ describe('stickFit', () => {
     expect(stickFit(y.subarray(0, 99), u.subarray(0, 99), 1, 60)).toBeNull()
     expect(stickFit(y, new Float64Array(1200).fill(40), 1, 60)).toBeNull()
     expect(() => stickFit(y, u.subarray(1), 1, 60)).toThrow(/one length/)
+  })
+})
+
+describe('controllerSign', () => {
+  const random = seededRandom(12)
+  const e = Float64Array.from({ length: 500 }, (_, i) => Math.sin(i / 9) + 0.1 * random.normal())
+  /** u = K e + K / Ti integral e */
+  const pi = (gain: number) => { let sum = 0; return e.map((x) => { sum += x; return 40 + gain * (x + sum / 20) }) }
+  it('reads the action of a PI controller, whatever the set-up says', () => {
+    expect(controllerSign(e, pi(0.5), -1)).toBe(1)
+    expect(controllerSign(e, pi(-0.5), 1)).toBe(-1)
+  })
+  it('believes the set-up where the record does not tell', () => {
+    expect(controllerSign(e, e.map(() => 40), -1)).toBe(-1)
+    expect(controllerSign(e, e.map(() => random.normal()), 1)).toBe(1)
+    expect(controllerSign(e.subarray(0, 20), pi(-1).subarray(0, 20), 1)).toBe(1)
   })
 })
 
