@@ -14,19 +14,17 @@ const nice = (span: number): number => {
 }
 
 /**
- * A range for a loop whose range nobody has said: round limits that hold the data with a tenth to spare, from 0 where
- * the data are positive and reach well down. Marked as guessed, because measures in per cent of span hang on it.
+ * A range for a loop whose range nobody has said: from 0 to a round limit above the data, to both sides where they are
+ * negative. Instruments are bought with ranges that begin at 0 and are many times what a week moves (common practice,
+ * no source); a range laid close around a quiet week would make a tolerance in per cent of it smaller than the noise.
+ * Marked as guessed, because measures in per cent of span hang on it.
  */
 export function guessRange(min: number, max: number): { low: number, high: number } {
-  if (!(max > min)) {
-    const size = Math.max(1, Math.abs(min))
-    return { low: min >= 0 ? 0 : -nice(size * 2), high: min >= 0 ? nice(size * 2) : 0 }
-  }
-  const margin = (max - min) * 0.1
-  if (min >= 0 && min - margin < max * 0.5) return { low: 0, high: nice(max + margin) }
-  const step = nice((max - min) / 5)
-  const low = Math.floor((min - margin) / step) * step
-  return { low: Number(low.toPrecision(12)), high: Number((Math.ceil((max + margin) / step) * step).toPrecision(12)) }
+  const limit = (size: number) => Number(nice(Math.max(size * 1.1, Number.MIN_VALUE * 1e20)).toPrecision(12))
+  if (min >= 0) return { low: 0, high: max > 0 ? limit(max) : 1 }
+  if (max <= 0) return { low: -limit(-min), high: 0 }
+  const both = limit(Math.max(max, -min))
+  return { low: -both, high: both }
 }
 
 /** Output limits: per cent, unless the data can only be a fraction or leave that range. */
