@@ -27,7 +27,7 @@ const SP_MOVE_FRACTION = 0.005
 /**
  * Stretches of a record that may carry a process model: around moves of the set point in a normal mode, around moves of
  * OP in manual, and the liveliest pieces of normal operation in between. Each says whether it is usable and why not.
- * A move counts from half a per cent of span. A stretch reaches from half a settling horizon before its first move to three
+ * A move counts from half a per cent of span. A stretch reaches from one settling horizon before its first move to three
  * after its last; moves closer together than that share a stretch. O(n).
  * @param record the prepared record of the time looked at
  * @param outages times that say nothing about the process
@@ -50,7 +50,7 @@ export function findStretches(record: PreparedRecord, setup: LoopSetup, outages:
       const moves = signal ? movesOf(signal, from, to, manual ? OP_MOVE_FRACTION * opSpan : SP_MOVE_FRACTION * pvSpan) : []
       const taken: [number, number][] = []
       for (let i = 0; i < moves.length;) {
-        const begin = Math.max(from, taken.length ? taken[taken.length - 1][1] : from, moves[i] - Math.ceil(horizon / 2))
+        const begin = Math.max(from, taken.length ? taken[taken.length - 1][1] : from, moves[i] - horizon)
         let last = i
         while (last + 1 < moves.length && moves[last + 1] - moves[last] < 3 * horizon && moves[last + 1] + 3 * horizon - begin < MOST_SAMPLES) last++
         const end = Math.min(to, moves[last + 1] ?? to, moves[last] + 3 * horizon, begin + MOST_SAMPLES)
@@ -60,7 +60,7 @@ export function findStretches(record: PreparedRecord, setup: LoopSetup, outages:
         taken.push([begin, end])
         i = last + 1
       }
-      if (!manual) for (const [a, b] of between(taken, from, to)) pieces(a, b, horizon).forEach(([begin, end]) => judge('natural', begin, end, 0))
+      if (!manual) for (const [a, b] of between(taken, from, to)) pieces(a, b, horizon, setup.form === 'onOff' ? 1200 : MOST_SAMPLES).forEach(([begin, end]) => judge('natural', begin, end, 0))
     }
   }
   const natural = found.filter(s => s.kind === 'natural')
@@ -99,9 +99,9 @@ function between(taken: [number, number][], from: number, to: number): [number, 
   return out
 }
 
-/** pieces of about five horizons. */
-function pieces(from: number, to: number, horizon: number): [number, number][] {
-  const length = Math.min(MOST_SAMPLES, Math.max(150, 5 * horizon))
+/** Pieces of about five horizons; of an on-off loop not so long that its switchings would have to be averaged away. */
+function pieces(from: number, to: number, horizon: number, most: number): [number, number][] {
+  const length = Math.min(most, Math.max(150, 5 * horizon))
   const count = Math.max(1, Math.floor((to - from) / length))
   return Array.from({ length: count }, (_, k) => [from + k * length, Math.min(to, from + (k + 1) * length)])
 }

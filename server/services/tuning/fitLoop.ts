@@ -11,7 +11,7 @@ const MOST_FITTED = 8
 const MOST_SAMPLES_OF_A_FIT = 1200
 const DRAWN = 240
 
-const METHOD = 'Prediction-error least squares: output error with a joint noise model, 95 % intervals from the Fisher information; first order, second order and integrating models compared by the criteria of Schwarz and Akaike. PV and OP are averaged over the same short blocks where a stretch has more than 1200 samples.'
+const METHOD = 'Prediction-error least squares: output error with an autoregressive noise model, 95 % intervals by the larger of Fisher information and jackknife; first order, second order and integrating models compared by the criteria of Schwarz and Akaike. PV and OP are averaged over the same short blocks where a stretch has more than 1200 samples.'
 const SOURCE = 'L. Ljung (1999), System Identification, 2nd ed., ch. 7, 9, 13; G. Schwarz (1978); H. Akaike (1974). Noise of PV: T. Gasser, L. Sroka, C. Jennen-Steinmetz (1986), Biometrika 73:625-633.'
 
 /**
@@ -35,27 +35,34 @@ export function fitLoop(record: LoopRecord, setup: LoopSetup, outages: readonly 
   const block = Math.max(1, Math.ceil(Math.max(0, ...fitted.map(s => s.end - s.begin)) / MOST_SAMPLES_OF_A_FIT))
   const intervalS = prepared.intervalS * block
   const onOff = setup.form === 'onOff'
+  const horizon = setup.settlingS / prepared.intervalS
   const compare = (stretches: Stretch[]) => {
-    const leads = stretches.map(s => Math.floor(s.lead / block)).filter(lead => lead >= 5)
-    const closedLoop = !onOff && stretches.some(s => s.kind !== 'manualMove')
+    // half of the history before the first move: the rest must show the loop at rest, or the move looks like its start-up
+    const leads = stretches.map(s => Math.floor(s.kind === 'natural' ? horizon / block / 2 : s.lead / block / 2)).filter(lead => lead >= 5)
+    const quarter = Math.min(...stretches.map(s => Math.floor((s.end - s.begin) / block / 4)))
+    // a cycle looks the same one period later, and half a period later with the other sign
+    const longest = onOff ? Math.max(2, Math.floor(shortestPhase(prepared.op!, stretches) / block)) : leads.length === stretches.length ? Math.min(...leads) : quarter
+    // the least telling of the stretches decides how careful the fit must be
+    const excitation = !onOff && stretches.some(s => s.kind === 'natural') ? 'natural' as const : onOff || stretches.some(s => s.kind === 'setpointMove') ? 'setpointStep' as const : 'manualMove' as const
     return compareModels(stretches.map(s => percentOf(prepared, setup, s, block)), {
-      interval: intervalS, closedLoop, hold: closedLoop ? 'first' : 'zero',
-      // no longer than the history before the first move, so that the move itself is not spent on history
-      ...(leads.length === stretches.length && leads.length > 0 && { maximumDeadTime: Math.min(...leads, ...stretches.map(s => Math.floor((s.end - s.begin) / block / 4))) * intervalS }),
+      interval: intervalS, excitation, hold: onOff || excitation === 'manualMove' ? 'zero' : 'first',
+      maximumDeadTime: Math.min(quarter, longest) * intervalS,
     })
   }
   const own = new Map<Stretch, Comparison>()
   for (const s of fitted) {
     if ((s.end - s.begin) / block < 40) Object.assign(s, { usable: false, reason: 'It is too short beside the others to be fitted in the same steps; look at fewer weeks.' })
-    else own.set(s, toComparison(compare([s])))
+    else own.set(s, toComparison(compare([s]), setup, s.kind === 'manualMove'))
   }
   const able = fitted.filter(s => s.usable)
   const carries = (s: Stretch) => own.get(s)!.fits.some(f => f.kind === own.get(s)!.best && f.status === 'ok')
   const moves = able.filter(s => s.kind !== 'natural')
-  const together = chosen ? able.filter(wanted) : able.some(carries) ? able.filter(carries) : moves.length ? moves : able
+  // moves together say more than the best of them alone
+  const together = chosen ? able.filter(wanted) : moves.length ? moves : able.some(carries) ? able.filter(carries) : able
   const jointFit = together.length ? compare(together) : null
-  const joint = jointFit && toComparison(jointFit)
-  const bestFit = jointFit && usableFit(jointFit.best)
+  const joint = jointFit && toComparison(jointFit, setup, together.every(s => s.kind === 'manualMove'))
+  const drawnKind = joint && (joint.fits.find(f => f.kind === joint.best && f.status === 'ok') ?? joint.fits.find(f => f.status === 'ok'))?.kind
+  const bestFit = jointFit && usableFit(jointFit.candidates.find(c => c.kind === drawnKind)?.fit ?? jointFit.best)
 
   const stretches: StretchView[] = shown.sort((a, b) => a.begin - b.begin).map((s) => {
     const place = together.indexOf(s)
@@ -96,11 +103,25 @@ function bridge(x: Float64Array): Float64Array {
   return x
 }
 
-function toComparison({ candidates, best, reason }: ModelComparison): Comparison {
+/** Samples of the shortest usual on or off time. */
+function shortestPhase(op: Float64Array, stretches: Stretch[]): number {
+  const phases: number[] = []
+  for (const s of stretches) {
+    let since = s.begin
+    for (let i = s.begin + 1; i < s.end; i++) if (Math.abs(op[i] - op[i - 1]) > 1) { phases.push(i - since); since = i }
+  }
+  phases.sort((a, b) => a - b)
+  return phases.length > 4 ? phases[phases.length >> 2] : Infinity
+}
+
+function toComparison({ candidates, best, reason }: ModelComparison, { action }: LoopSetup, openLoop: boolean): Comparison {
   const fits = candidates.map(({ kind, fit }): FitView => {
     const known = usableFit(fit)
+    // a controller that works has the sign of the process; the other sign is the controller's own, seen backwards
+    const backwards = !openLoop && fit.status === 'ok' && (fit.model.processGain > 0) !== (action === 'reverse')
     return {
-      kind, status: fit.status === 'ok' ? 'ok' : 'refused', reason: fit.status === 'ok' ? '' : fit.reason, model: known?.model ?? null,
+      kind, status: fit.status === 'ok' && !backwards ? 'ok' : 'refused',
+      reason: backwards ? `The sign of the gain does not fit the ${action} action of the loop: either the set-up is wrong, or the data show the controller and not the process.` : fit.status === 'ok' ? '' : fit.reason, model: known?.model ?? null,
       parameters: known?.parameters ?? {}, fitPercent: known?.fitPercent ?? null, residual: known?.residualStandardDeviation ?? null, residualCorrelation: known?.residualCorrelation ?? null, samples: known?.samples ?? 0,
     }
   })
