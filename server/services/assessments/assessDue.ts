@@ -71,7 +71,13 @@ export async function finishWeeks(db: Knex): Promise<void> {
     const week = await db.transaction(async (trx) => {
       const found = await lockFinishedWeek(trx)
       if (!found) return null
-      for (const step of afterAssessment) await step(trx, found)
+      for (const step of afterAssessment) {
+        // in a savepoint: a step that fails must not keep the week, and the imports that wait for it, open for ever
+        await trx.transaction(part => step(part, found)).catch((error: Error & { code?: string }) => {
+          if (/^(57P|08|ECONN)/.test(error.code ?? '')) throw error
+          console.error(`${step.name} of ${found}:`, error)
+        })
+      }
       await deleteWeekDue(trx, found)
       return found
     })

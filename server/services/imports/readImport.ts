@@ -31,7 +31,7 @@ const MOST_ATTEMPTS = 5
 const PROGRESS_EVERY_MS = 400
 /** Encoded blocks are stored once they come to so much, while the next ones are read. */
 const STORE_BYTES = 4 << 20
-const MOST_BYTES = 96 << 20
+const MOST_BYTES = 384 << 20
 
 export interface ReadOptions { dataDir: string, valueBytes?: number, now?: () => number, note?: (line: string) => void }
 

@@ -40,12 +40,17 @@ export class LongScanner {
   private readonly lastQuality = new LastCell()
   private readonly from: Int32Array
   private readonly to: Int32Array
+  /** the columns stand as usual, so that `plainLine` may try */
+  private readonly usual: boolean
+  private readonly decimal: number
 
   /** @param seriesOf called once for each new name in the tag column */
   constructor(private readonly plan: LongPlan, private readonly sink: LongSink, private readonly times: TimeReader, private readonly modes: ModeNames, private readonly log: ScanLog, firstLine: number, seriesOf: (name: string, id: number) => SeriesKind) {
     this.line = firstLine
     this.from = new Int32Array(plan.headers.length)
     this.to = new Int32Array(plan.headers.length)
+    this.decimal = plan.decimal.charCodeAt(0)
+    this.usual = plan.timeColumn === 0 && plan.tagColumn === 1 && plan.valueColumn === 2 && plan.headers.length === (plan.qualityColumn === 3 ? 4 : 3)
     this.table = new SeriesTable((name, id) => {
       this.kinds[id] = seriesOf(plan.decode(name).trim(), id)
       this.before[id] = NaN
@@ -67,6 +72,15 @@ export class LongScanner {
         start += first === NEWLINE ? 1 : 2
         this.line++
         continue
+      }
+      if (this.usual) {
+        const next = this.plainLine(bytes, start, delimiter)
+        if (next > 0) {
+          log.rows++
+          this.line++
+          start = next
+          continue
+        }
       }
       let p = start
       let column = 0
@@ -114,6 +128,76 @@ export class LongScanner {
     }
     if (sink.rows > sink.capacity) throw new Error('LongSink overran')
     return start
+  }
+
+  /**
+   * The usual line: a tag that was expected after the one before, a plain number or the mode as before, the quality as
+   * before. @returns the offset behind it, or -1 without having changed anything: then `take` has a closer look.
+   */
+  private plainLine(bytes: Uint8Array, start: number, delimiter: number): number {
+    const timeTo = this.times.sameAsLast(bytes, start, delimiter)
+    let p = timeTo
+    if (p < 0) {
+      p = start
+      let c = bytes[p]
+      while (c !== delimiter && c !== NEWLINE) c = bytes[++p]
+      if (c === NEWLINE || bytes[start] === QUOTE || bytes[start] === 32) return -1
+    }
+    const timeEnd = p++
+    const id = this.table.expected(bytes, p, delimiter)
+    if (id < 0) return -1
+    const kind = this.kinds[id]
+    p += this.table.lengthOf(id) + 1
+    let value = 0
+    if (kind === 'value') {
+      const negative = bytes[p] === 45
+      if (negative) p++
+      const from = p
+      let mantissa = 0
+      let d = bytes[p] - 48
+      while (d >= 0 && d <= 9) {
+        mantissa = mantissa * 10 + d
+        d = bytes[++p] - 48
+      }
+      let digits = p - from
+      let fraction = 0
+      if (bytes[p] === this.decimal) {
+        const at = ++p
+        d = bytes[p] - 48
+        while (d >= 0 && d <= 9) {
+          mantissa = mantissa * 10 + d
+          d = bytes[++p] - 48
+        }
+        fraction = p - at
+        digits += fraction
+      }
+      if (digits === 0 || digits > 15) return -1
+      value = fraction === 0 ? mantissa : mantissa / POWERS[fraction]
+      if (negative) value = -value
+    }
+    else if (kind === 'mode') {
+      const last = this.lastModes[id]
+      const length = last.matches(bytes, p)
+      if (length <= 0 || last.code === MODE_UNKNOWN) return -1
+      value = last.code
+      p += length
+    }
+    else { return -1 }
+    if (this.plan.qualityColumn === 3) {
+      if (bytes[p] !== delimiter || this.lastQuality.code !== 0) return -1
+      const length = this.lastQuality.matches(bytes, ++p)
+      if (length <= 0) return -1
+      p += length
+    }
+    if (bytes[p] === RETURN) p++
+    if (bytes[p] !== NEWLINE) return -1
+    const t = timeTo >= 0 ? this.times.lastUtc : this.times.read(bytes, start, timeEnd, this.before[id])
+    if (t !== t) return -1
+    this.table.took(id)
+    this.before[id] = t
+    this.log.samples++
+    this.sink.push(t, id, value)
+    return p + 1
   }
 
   private textOf(bytes: Uint8Array, from: number, to: number): string { return this.plan.decode(bytes.subarray(from, to)) }

@@ -29,6 +29,13 @@ export class LastCell {
     return true
   }
 
+  /** Length of the remembered cell when it stands at `from` (what follows is not looked at), else -1. */
+  matches(bytes: Uint8Array, from: number): number {
+    const n = this.length
+    for (let i = 0; i < n; i++) if (this.bytes[i] !== bytes[from + i]) return -1
+    return n
+  }
+
   keep(bytes: Uint8Array, from: number, to: number, code: number): void {
     const n = to - from
     this.length = n <= this.bytes.length ? n : -1

@@ -19,6 +19,21 @@ export class SeriesTable {
     return id
   }
 
+  /** The series that usually comes next, when its name and a delimiter stand at `from`; else -1. */
+  expected(bytes: Uint8Array, from: number, delimiter: number): number {
+    // in a file by tag it is the same again, in a file by time the one that followed before
+    const id = this.before < 0 ? -1 : this.following[this.before]
+    if (id < 0) return -1
+    const name = this.names[id]
+    const n = name.length
+    if (bytes[from + n] !== delimiter) return -1
+    for (let i = 0; i < n; i++) if (name[i] !== bytes[from + i]) return -1
+    return id
+  }
+
+  lengthOf(id: number): number { return this.names[id].length }
+  took(id: number): void { this.before = id }
+
   private equal(id: number, bytes: Uint8Array, from: number, to: number): boolean {
     const name = this.names[id]
     if (name.length !== to - from) return false

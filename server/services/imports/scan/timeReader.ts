@@ -53,7 +53,8 @@ export class TimeReader {
   reason = ''
   private last = new Uint8Array(40)
   private lastLength = -1
-  private lastUtc = NaN
+  /** the time that `sameAsLast` speaks of */
+  lastUtc = NaN
   private datePrefix = new Uint8Array(16)
   private datePrefixLength = 0
   private dateMs = 0
@@ -88,6 +89,15 @@ export class TimeReader {
       this.lastUtc = utc
     }
     return utc
+  }
+
+  /** The end of the time stamp at `from` when it is the last one again and a delimiter follows; else -1. */
+  sameAsLast(bytes: Uint8Array, from: number, delimiter: number): number {
+    const n = this.lastLength
+    if (n < 0 || bytes[from + n] !== delimiter) return -1
+    const last = this.last
+    for (let i = 0; i < n; i++) if (last[i] !== bytes[from + i]) return -1
+    return from + n
   }
 
   private readEpoch(bytes: Uint8Array, from: number, to: number): number {
