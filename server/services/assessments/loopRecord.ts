@@ -26,15 +26,17 @@ function alignSignals(record: LoopRecord): LoopRecord {
   for (let i = 0; i < n; i++) if (pv[i] === pv[i]) pvCount++
   if (pvCount === 0) return record
   let apart = false
-  const align = (missing: (i: number) => boolean, copy: (i: number, from: number) => void, steps: boolean) => {
+  const align = (x: Float64Array | Uint8Array, unknown: number, steps: boolean) => {
+    const present = (v: number) => v === v && v !== unknown
     let count = 0
     let both = 0
     for (let i = 0; i < n; i++) {
-      if (missing(i)) continue
+      const v = x[i]
+      if (v !== v || v === unknown) continue
       count++
       if (pv[i] === pv[i]) both++
     }
-    if (count === 0) return
+    if (count === 0 || count === n) return
     const interleaved = both < 0.5 * Math.min(count, pvCount)
     if (!interleaved && !(steps && count < 0.2 * pvCount)) return
     apart ||= interleaved
@@ -42,14 +44,14 @@ function alignSignals(record: LoopRecord): LoopRecord {
     const holdMs = steps ? Infinity : 5 * (t[n - 1] - t[0]) / count
     let last = -1
     for (let i = 0; i < n; i++) {
-      if (!missing(i)) last = i
-      else if (last >= 0 && t[i] - t[last] <= holdMs) copy(i, last)
+      if (present(x[i])) last = i
+      else if (last >= 0 && t[i] - t[last] <= holdMs) x[i] = x[last]
     }
   }
   const { sp, op, mode } = record
-  if (sp) align(i => sp[i] !== sp[i], (i, from) => { sp[i] = sp[from] }, true)
-  if (op) align(i => op[i] !== op[i], (i, from) => { op[i] = op[from] }, false)
-  if (mode) align(i => mode[i] === MODE_UNKNOWN, (i, from) => { mode[i] = mode[from] }, true)
+  if (sp) align(sp, NaN, true)
+  if (op) align(op, NaN, false)
+  if (mode) align(mode, MODE_UNKNOWN, true)
   if (!apart) return record
   let k = 0
   for (let i = 0; i < n; i++) {

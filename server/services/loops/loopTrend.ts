@@ -1,7 +1,7 @@
 import { decodeBlocks } from '../../../db/blocks/decodeBlocks'
 import type { Database } from '../../../db/knex'
 import { findLoop } from '../../../db/repositories/loops'
-import { findBlockSpan, listBlocks } from '../../../db/repositories/trendBlocks'
+import { findBlockSpan, listBlocksOfTag } from '../../../db/repositories/trendBlocks'
 import { Refusal } from '../refusal'
 import { thinTrend, type ThinTrend } from './thinTrend'
 
@@ -11,18 +11,24 @@ export interface TrendAnswer { t: string[], pv: (number | null)[], sp: (number |
 
 /** Samples of a loop in [from, to), thinned to at most `points` rows with the peaks kept. Without a span: the last seven days there are. */
 export async function loopTrend(db: Database, tag: string, span: { from?: Date, to?: Date, points: number }): Promise<TrendAnswer> {
-  const loop = await findLoop(db, tag)
-  if (!loop) throw new Refusal(404, 'not_found', `There is no loop named ${tag}.`)
   let from = span.from?.getTime()
   let to = span.to?.getTime()
   if (from === undefined || to === undefined) {
-    const stored = await findBlockSpan(db, loop.id)
+    const stored = await findBlockSpan(db, await idOf(db, tag))
     if (!stored) return { t: [], pv: [], sp: [], op: [], mode: [] }
     to ??= Math.max(Date.parse(stored.last) + DAY_MS, (from ?? 0) + DAY_MS)
     from ??= span.to ? to - 7 * DAY_MS : Math.max(Date.parse(stored.first), to - 7 * DAY_MS)
   }
   if (!(to > from)) throw new Refusal(422, 'invalid_input', 'The span must end after it begins.', { issues: [{ path: 'to', message: 'must be after from' }] })
-  return toAnswer(thinTrend(decodeBlocks(await listBlocks(db, [loop.id], from, to), from, to), span.points))
+  const blocks = await listBlocksOfTag(db, tag, from, to)
+  if (blocks.length === 0) await idOf(db, tag)
+  return toAnswer(thinTrend(decodeBlocks(blocks, from, to), span.points))
+}
+
+async function idOf(db: Database, tag: string): Promise<number> {
+  const loop = await findLoop(db, tag)
+  if (!loop) throw new Refusal(404, 'not_found', `There is no loop named ${tag}.`)
+  return loop.id
 }
 
 const toAnswer = (trend: ThinTrend): TrendAnswer => ({ ...trend, t: trend.t.map(ms => new Date(ms).toISOString()) })
