@@ -7,7 +7,7 @@
  */
 import { readFileSync, writeFileSync } from 'node:fs'
 import { fileURLToPath } from 'node:url'
-import { FEATURES, type FeatureValues } from '../shared/assessment/verdict/gatherFeatures'
+import { FEATURES, type FeatureName, type FeatureValues } from '../shared/assessment/verdict/gatherFeatures'
 import { binOf, posteriorOf, type LikelihoodTable } from '../shared/assessment/verdict/likelihoods'
 import { seededRandom } from '../shared/assessment/statistics/seededRandom'
 import { CAUSE_VERDICT, type Cause } from '../shared/assessment/simulation/scenario'
@@ -25,6 +25,11 @@ const CROPPED_SEEDS: Partial<Record<Cause, number>> = { healthy: 16, tightTuning
 const CLASSES: Verdict[] = ['steady', 'huntingTuning', 'huntingValve', 'huntingExternal', 'sluggish', 'sensor', 'noise']
 const COUNTED: Cause[] = ['saturated', 'leftInManual', 'sensorFrozen', 'sensorOutOfRange']
 const BINS = 6
+/** Figures whose strong values are rare: quantiles would drown them in the last bin. Round values, chosen beforehand. */
+const FIXED_EDGES: Partial<Record<FeatureName, number[]>> = {
+  slipShare: [0.02, 0.15, 0.3, 0.5], slipCount: [0.5, 1.5, 3.5, 10.5], standingTravel: [0.15, 0.25, 0.35, 0.45, 0.55], jumpShare: [0.35, 0.4, 0.45, 0.5, 0.55, 0.65],
+  stickGain: [-0.1, -0.02, 0, 0.02, 0.05, 0.1], manualSwing: [0.1, 0.3, 0.6], setpointSwing: [0.01, 0.1, 0.5], wildShare: [1e-5, 1e-3, 1e-2],
+}
 /** Ridge on the weights, and on differences between neighbouring bins: both per training loop. */
 const RIDGE = 0.0012
 const SMOOTH = 0.004
@@ -75,7 +80,7 @@ function quantileEdges(values: number[]): number[] {
 /** Multinomial logistic regression on the bins, Nesterov's accelerated gradient with a fixed step; convex, so the start does not matter. */
 function fit(loops: CaseResult[]): LikelihoodTable {
   const K = CLASSES.length
-  const edges = FEATURES.map(f => quantileEdges(loops.map(r => r.features[f])))
+  const edges = FEATURES.map(f => FIXED_EDGES[f] ?? quantileEdges(loops.map(r => r.features[f])))
   const offsets: number[] = []
   let size = K
   for (const e of edges) {

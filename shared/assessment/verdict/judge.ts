@@ -172,6 +172,8 @@ function inferredFinding(facts: Facts, posterior: Posterior): Judgement {
   if (!prepared.op && HUNTING.includes(verdict)) return undecided('The loop hunts. Without OP in the record the cause cannot be told.')
   if (p < LEAST_CONFIDENCE) return undecided(`The evidence points two ways: ${NAMES[verdict]} (${percent(p)}) or ${NAMES[classes[order[1]]]} (${percent(probability[order[1]])}).`)
   if (verdict === 'huntingValve' && p < LEAST_VALVE) return undecided(`A sticking valve is possible (${percent(p)}), but not sure enough to name it.`)
+  // an uneven or small swing accuses the valve only when the valve itself shows a mark
+  if (verdict === 'huntingValve' && !(hunts && features.regularity > 0) && !valveMark(features)) return undecided(`A sticking valve is possible (${percent(p)}), but no test of the valve itself speaks for it.`)
   if (HUNTING.includes(verdict) && !hunts && p < LEAST_WITHOUT_LOSS) return undecided('There is a small swing whose cause is not clear.')
   const harmless = hours.offTarget > 0 ? null
     : verdict === 'sluggish' ? 'The loop keeps within its tolerance, though it works off upsets slowly.'
@@ -190,6 +192,11 @@ function inferredFinding(facts: Facts, posterior: Posterior): Judgement {
     verdict, confidence: own.confidence, verdictReason: (verdict === 'huntingValve' && !oscillations.length ? UNEVEN_VALVE : STATEMENTS[verdict]) + extra, findings: [own, ...others],
     evidence: own.evidence, nextActions: NEXT_ACTIONS[verdict], valveLikely: false,
   }
+}
+
+/** A mark that only a sticking valve leaves: slips, stand and jump, a clear gain of the sticking stem, or a swing that stops in manual. */
+function valveMark(f: FeatureValues): boolean {
+  return (f.slipCount >= 2 && f.slipShare >= 0.3) || (f.standingTravel > 0.55 && f.jumpShare > 0.55) || (f.stickGain > 0.05 && f.stickExplained > 0.5) || f.manualSwing < 0.3
 }
 
 const NAMES: Readonly<Record<Verdict, string>> = {
