@@ -13,7 +13,8 @@ import { simulateOnOff } from '../../shared/control/onOff/simulateOnOff'
 import { simulateClosedLoop } from '../../shared/control/simulation/simulateClosedLoop'
 import { noiseFor } from '../../shared/tuning/noiseFor'
 
-export const TUNING_WEEK = '2026-W47'
+/** a week and an area of their own, so that other tests keep their counts */
+export const TUNING_WEEK = '2026-W45'
 /** what is built into the loops: TIC-5501 in % of span and s; TIC-5502 in its own units */
 export const TRUTH = { 'TIC-5501': { processGain: 1.6, timeConstant: 400, deadTime: 80 }, 'TIC-5502': { processGain: 1.2, timeConstant: 900, deadTime: 60, hysteresis: 2 } } as const
 const INTERVAL_S = 10
@@ -43,10 +44,10 @@ export function onOffOfKnownModel(samples = 8640): { pv: Float64Array, sp: Float
   return { pv: pick(r.pv, 20).map(v => v + 0.05 * noise()), sp: pick(r.sp, 20), op: pick(r.op) }
 }
 
-/** Two loops of the kilns with samples and an assessed week, for the tuning desk; answers their ids by tag. */
+/** Two loops of the dryers with samples and an assessed week, for the tuning desk; answers their ids by tag. */
 export async function tuningPlant(db: Knex): Promise<Record<string, number>> {
-  await db('areas').insert([{ name: 'Kilns', position: 1 }]).onConflict('name').ignore()
-  const area = await db('areas').where({ name: 'Kilns' }).first('id')
+  await db('areas').insert([{ name: 'Dryers', position: 3 }]).onConflict('name').ignore()
+  const area = await db('areas').where({ name: 'Dryers' }).first('id')
   const settings = await getSettings(db)
   const frame = weekFrame(TUNING_WEEK, settings.zone)
   const ids: Record<string, number> = {}
