@@ -51,6 +51,8 @@ const LEAST_WITHOUT_LOSS = 0.7
 const LEAST_VALVE = 0.65
 
 const SUREST_ALONE = 0.92
+/** That a cause cannot be told is itself no estimate (ours). */
+const CANNOT_TELL = 0.9
 /** Noise is a finding of its own from this share of the tolerance (standard deviation; ours). */
 const NOISE_THAT_MATTERS = 0.3
 
@@ -166,7 +168,7 @@ function inferredFinding(facts: Facts, posterior: Posterior): Judgement {
   const hunts = oscillations.some(o => o.amplitude >= meaningful)
 
   const undecided = (reason: string): Judgement => ({
-    ...cannotTell(reason, [{ verdict: 'cannotTell', confidence: round(1 - p), hours: hours.hunting + hours.offTarget, evidence: [], reason }, finding(top), ...others], false),
+    ...cannotTell(reason, [{ verdict: 'cannotTell', confidence: CANNOT_TELL, hours: hours.hunting + hours.offTarget, evidence: [], reason }, finding(top), ...others], false),
     evidence: evidenceOf(facts, posterior, top),
   })
   if (!prepared.op && HUNTING.includes(verdict)) return undecided('The loop hunts. Without OP in the record the cause cannot be told.')
@@ -175,6 +177,9 @@ function inferredFinding(facts: Facts, posterior: Posterior): Judgement {
   // an uneven or small swing accuses the valve only when the valve itself shows a mark
   if (verdict === 'huntingValve' && !(hunts && features.regularity > 0) && !valveMark(features)) return undecided(`A sticking valve is possible (${percent(p)}), but no test of the valve itself speaks for it.`)
   if (HUNTING.includes(verdict) && !hunts && p < LEAST_WITHOUT_LOSS) return undecided('There is a small swing whose cause is not clear.')
+  // two jumps in a short record are too few to name the valve, and too many to call the loop sound
+  if (!HUNTING.includes(verdict) && verdict !== 'sensor' && features.slipCount >= 2 && features.slipShare >= 0.5 && probability[classes.indexOf('huntingValve')] >= 0.2)
+    return undecided(`PV stood, then jumped across the set point ${features.slipCount} times, as with a sticking valve. That is too little to be sure: check the valve or send a longer record.`)
   const harmless = hours.offTarget > 0 ? null
     : verdict === 'sluggish' ? 'The loop keeps within its tolerance, though it works off upsets slowly.'
       : verdict === 'noise' && !(features.noiseOverTolerance >= NOISE_THAT_MATTERS) ? 'The loop keeps within its tolerance; what is left is mostly noise.'
@@ -248,7 +253,7 @@ function onOff({ ledger, oscillations, setup }: Facts): Judgement {
 }
 
 function cannotTell(reason: string, findings: Finding[], valveLikely: boolean): Judgement {
-  const own: Finding[] = findings.some(f => f.verdict === 'cannotTell') ? findings : [{ verdict: 'cannotTell', confidence: 0.9, hours: 0, evidence: [], reason }, ...findings]
+  const own: Finding[] = findings.some(f => f.verdict === 'cannotTell') ? findings : [{ verdict: 'cannotTell', confidence: CANNOT_TELL, hours: 0, evidence: [], reason }, ...findings]
   return { verdict: 'cannotTell', confidence: own.find(f => f.verdict === 'cannotTell')!.confidence, verdictReason: reason, findings: own, evidence: [], nextActions: NEXT_ACTIONS.cannotTell, valveLikely }
 }
 
