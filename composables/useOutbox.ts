@@ -22,6 +22,8 @@ export interface Kept {
 }
 
 const items = shallowRef<Kept[]>([])
+/** sent a moment ago: shown as answered until the ticket was read again, so that no form opens anew in between */
+const recent = shallowRef<Kept[]>([])
 const waiting = ref(false)
 const sentCount = ref(0)
 let loaded = false
@@ -59,6 +61,7 @@ async function drain(userId: number): Promise<void> {
     try {
       await send(item)
       await deviceStore.remove(item.order)
+      recent.value = [...recent.value, item]
       waiting.value = false
       sentCount.value++
     }
@@ -110,5 +113,6 @@ export function useOutbox() {
     setInterval(() => { if (items.value.some(i => !i.refused)) void flush() }, 15_000)
   }
   const own = computed(() => items.value.filter(i => i.userId === session.person?.id))
-  return { items: own, waiting, sentCount, keep, amend, drop, flush }
+  const forget = (sent: readonly Kept[]) => { recent.value = recent.value.filter(i => !sent.includes(i)) }
+  return { items: own, recent, forget, waiting, sentCount, keep, amend, drop, flush }
 }

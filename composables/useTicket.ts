@@ -19,7 +19,12 @@ export function useTicket(id: () => number) {
       throw signal.aborted ? error : failure
     }
   }, [id])
-  watch(outbox.sentCount, () => { void load.reload() })
+  watch(outbox.sentCount, async () => {
+    const sent = outbox.recent.value
+    await load.reload()
+    // one that was overtaken by a newer reading leaves it to that
+    if (!load.pending.value) outbox.forget(sent)
+  })
   const back = () => { void outbox.flush(); void load.reload() }
   window.addEventListener('online', back)
   onScopeDispose(() => window.removeEventListener('online', back))

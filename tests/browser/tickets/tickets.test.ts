@@ -96,7 +96,7 @@ describe('from the table to closed proof', () => {
 
   it('works on without connection: entries are kept over a reload, shown as not sent, and sent later in order', async () => {
     // the program that keeps the pages must have taken over
-    await phone.evaluate(() => navigator.serviceWorker.ready.then(() => undefined))
+    await phone.waitForFunction(() => navigator.serviceWorker.getRegistration().then(r => Boolean(r?.active)))
     await phone.reload()
     await phone.getByRole('heading', { name: 'Ask the operator' }).waitFor()
     await phone.waitForFunction(() => navigator.serviceWorker.controller !== null)
