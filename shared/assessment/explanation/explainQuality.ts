@@ -16,7 +16,8 @@ export function middleOf(x: Float64Array): Float64Array {
 
 /**
  * Resolution and compression. Frozen stretches do not count, or a dead sensor would look like a thinned record. Where rounding hides PV's
- * compression, OP's is looked at, in a normal mode and off its limits.
+ * compression, OP's is looked at, in a normal mode and off its limits: a dead sensor makes the
+ * output a ramp, which looks thinned.
  * @returns why shape, benchmark and valve tests cannot be trusted on this record, or null
  */
 export function explainQuality(explain: Explainer, prepared: PreparedRecord, step: QuantisationStep): string | null {
@@ -26,7 +27,7 @@ export function explainQuality(explain: Explainer, prepared: PreparedRecord, ste
   const c = piece.length > 0 ? compressionFactor(piece, step.step) : null
   if (!c || isInsufficient(c)) {
     explain.withhold('compressionFactor', c ? sentence(c.reason) : 'No samples in this week.')
-    return prepared.op && prepared.n > 1 ? outputThinned(masked(prepared, prepared.op, OFF_NORMAL | AT_LOW | AT_HIGH)) : null
+    return prepared.op && prepared.n > 1 ? outputThinned(masked(prepared, prepared.op, FROZEN | OFF_NORMAL | AT_LOW | AT_HIGH)) : null
   }
   explain.set('compressionFactor', c.factor, c.samples, { tolerance: c.tolerance, upperLimit: COMPRESSION_LIMIT }, { zeroSecondDifferences: c.zeroSecondDifferences, repeats: c.repeats, repeatFactor: c.repeatFactor })
   if (c.factor > COMPRESSION_LIMIT) return `The historian has thinned the record (compression factor ${c.factor.toFixed(1)}, limit 3), so its shape cannot be trusted.`

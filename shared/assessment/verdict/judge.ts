@@ -97,8 +97,8 @@ export function judge(facts: Facts): Judgement {
   if (tooShort) {
     if (!worst) return cannotTell(tooShort, findings, false)
   }
-  else if (compression) soft = cannotTell(compression, findings, false)
-  else if (tooSlow) soft = cannotTell(tooSlow, findings, false)
+  else if (compression) soft = cannotTell(compression, [], false)
+  else if (tooSlow) soft = cannotTell(tooSlow, [], false)
   else if (setup.form === 'onOff') soft = onOff(facts)
   else soft = inferred
 

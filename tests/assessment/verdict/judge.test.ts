@@ -100,6 +100,9 @@ describe('judge', () => {
       expect(j.findings.find(f => f.verdict === 'cannotTell')!.reason).toBe(reason)
     }
     expect(judge(facts({ tooShort: 'Too short.' })).verdict).toBe('cannotTell')
+    // each finding stands once
+    const both = judge(facts({ manual: 40, limit: 5, compression: 'The historian has thinned the record.' })).findings.map(f => f.verdict)
+    expect(new Set(both).size).toBe(both.length)
     // a thinned record still shows that the loop stood in manual
     expect(judge(facts({ manual: 40, compression: 'The historian has thinned the record.' })).verdict).toBe('manual')
   })
