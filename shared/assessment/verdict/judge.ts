@@ -108,7 +108,7 @@ export function judge(facts: Facts): Judgement {
       findings.push(...soft.findings.filter(f => f.hours > 0 || (f.verdict !== 'steady' && f.confidence >= LEAST_WITHOUT_LOSS)))
     }
     else {
-      const all = [...soft.findings, ...counted].sort((a, b) => b.hours - a.hours)
+      const all = unique([...soft.findings, ...counted].sort((a, b) => b.hours - a.hours))
       const first = all.findIndex(f => f.verdict === soft!.verdict)
       if (first > 0) all.unshift(...all.splice(first, 1))
       return { ...soft, findings: all, valveLikely }
@@ -119,9 +119,12 @@ export function judge(facts: Facts): Judgement {
   const others = oscillations.length > 0 && hours.hunting > 0 ? ` It also hunted for ${h(hours.hunting)}.` : ''
   return {
     verdict: worst.verdict, confidence: worst.confidence, verdictReason: `${worst.evidence[0].text}${others}`,
-    findings, evidence: worst.evidence, nextActions: NEXT_ACTIONS[worst.verdict], valveLikely,
+    findings: unique(findings), evidence: worst.evidence, nextActions: NEXT_ACTIONS[worst.verdict], valveLikely,
   }
 }
+
+/** One finding a verdict: the one with more hours, which comes first. */
+const unique = (findings: Finding[]): Finding[] => findings.filter((f, i) => findings.findIndex(o => o.verdict === f.verdict) === i)
 
 const h = (hours: number): string => `${hours} h`
 
