@@ -19,7 +19,7 @@ export function mediaTypeOf(bytes: Uint8Array, name: string): string | null {
 function isText(bytes: Uint8Array): boolean {
   try {
     // eslint-disable-next-line no-control-regex -- that is what is looked for
-    return !/[\u0000-\u0008\u000E-\u001F]/.test(new TextDecoder('utf-8', { fatal: true }).decode(bytes))
+    return !/[\u0000-\u0008\u000E-\u001F\u007F]/.test(new TextDecoder('utf-8', { fatal: true }).decode(bytes))
   }
   catch { return false }
 }

@@ -204,6 +204,21 @@ describe('two people at once', () => {
   })
 })
 
+describe('mails at once', () => {
+  it('are left out for people who turned them off', async () => {
+    const { db } = scratch
+    const tag = `FIC-${9000 + made++}`
+    await addLoop(db, tag)
+    await db('users').where({ id: accounts.technician.id }).update({ notify: JSON.stringify({ assignment: false, handBack: true, overdue: true }) })
+    const ticket = await openTicket(db, engineer(), { tags: [tag], week: '2026-W40', assigneeId: accounts.technician.id })
+    expect(await db('mails').where('key', 'like', `assignment-${ticket}-%`)).toHaveLength(0)
+    await db('users').where({ id: accounts.technician.id }).update({ notify: JSON.stringify({ assignment: true, handBack: true, overdue: true }) })
+    await changeTicket(db, engineer(), ticket, { version: 1, assigneeId: accounts.engineer.id })
+    await changeTicket(db, engineer(), ticket, { version: 2, assigneeId: accounts.technician.id })
+    expect((await db('mails').where('key', 'like', `assignment-${ticket}-%`)).map((m: any) => m.recipient)).toEqual(['technician@site.example'])
+  })
+})
+
 describe('overdue', () => {
   it('is told once for each ticket and due date, not in the night, by the calendar of the site', async () => {
     const { db } = scratch
