@@ -14,8 +14,11 @@ import type { LedgerState } from '../shared/assessment/types'
 export interface RibbonLook {
   /** px on screen */
   width: number
+  /** of a marked row: the patterns are made for it */
   rowHeight: number
   gap: number
+  /** where each row begins and the whole ends, px (rowTops) */
+  tops: readonly number[]
   theme: Theme
   /** device pixels per px */
   ratio: number
@@ -51,16 +54,15 @@ function tileOf(ctx: Canvas2d, state: LedgerState, height: number, theme: Theme,
   return pattern
 }
 
-/** Draws all rows; the canvas must be `width` x `rows * (rowHeight + gap) - gap` px large, times `ratio`. */
+/** Draws all rows; the canvas must be `width` x the last of `tops` px large, times `ratio`. */
 export function drawRibbons(ctx: Canvas2d, ribbons: readonly string[], look: RibbonLook): void {
-  const { width, rowHeight, gap, theme, ratio } = look
+  const { width, rowHeight, gap, tops, theme, ratio } = look
   const height = Math.round(rowHeight * ratio)
-  const step = (rowHeight + gap) * ratio
   ctx.setTransform(1, 0, 0, 1, 0, 0)
   ctx.clearRect(0, 0, ctx.canvas.width, ctx.canvas.height)
   ribbons.forEach((ribbon, row) => {
-    const y = Math.round(row * step)
-    const rowPx = gap > 0 ? height : Math.round((row + 1) * step) - y
+    const y = Math.round(tops[row] * ratio)
+    const rowPx = gap > 0 ? height : Math.round(tops[row + 1] * ratio) - y
     // edges are rounded to device pixels: a seam between two hours would look like a tick
     const x = (hour: number) => Math.round((hour * width * ratio) / ribbon.length)
     ctx.setTransform(1, 0, 0, 1, 0, y)

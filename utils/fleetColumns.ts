@@ -34,7 +34,7 @@ const words = (key: keyof LoopRow, head: string, about: string, width: number, t
 export const FLEET_COLUMNS: readonly FleetColumn[] = [
   { key: 'ribbon', head: 'Week', about: 'One cell for each hour of the week', width: 216, kind: 'ribbon', text: () => '' },
   number('lostHours', 'Lost', 'h', 'Hours in manual, at a limit, hunting, off target or with a doubtful sensor', formatCount, 60),
-  number('weightedLostHours', 'Weighted', 'h', 'Lost hours times 3, 2 or 1 by the priority of the loop', formatCount, 98),
+  number('weightedLostHours', 'Weighted', 'h', 'Lost hours times 3, 2 or 1 by the priority of the loop', formatCount, 94),
   number('change', 'Change', 'h', 'Weighted lost hours against the week before', formatChange, 80),
   { key: 'verdict', head: 'Verdict', about: 'The likely cause and how sure it is', width: 232, kind: 'words', text: row => VERDICT_WORDS[row.verdict], full: row => row.reason ?? (row.confidence === null ? '' : `${formatConfidence(row.confidence)} sure`) },
   { ...number('oscillationPeriod', 'Period', '', 'Period of the strongest oscillation', formatDuration, 70), full: row => (row.oscillationPeriod === null ? 'no oscillation found' : `${formatFull(row.oscillationPeriod)} s`) },
@@ -65,7 +65,7 @@ export const FLEET_COLUMNS: readonly FleetColumn[] = [
   percent('coverage', 'Coverage', 'Time with usable samples / length of the week', 104),
 ]
 
-export const USUAL_COLUMNS: readonly string[] = ['ribbon', 'lostHours', 'weightedLostHours', 'change', 'verdict', 'oscillationPeriod', 'saturationFraction', 'varianceRatio', 'openTicket']
+export const USUAL_COLUMNS: readonly string[] = ['ribbon', 'lostHours', 'weightedLostHours', 'change', 'verdict', 'oscillationPeriod', 'varianceRatio', 'openTicket']
 
 /** The columns of these keys in this order; keys that are none are left out. */
 export function columnsOf(keys: readonly string[]): FleetColumn[] {

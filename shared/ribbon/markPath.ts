@@ -13,8 +13,8 @@ export function markPath(pattern: Pattern, height: number): Mark | null {
   switch (pattern) {
     case 'wave': {
       // the control point of a quadratic curve pulls twice as far as the curve goes
-      const pull = height * 0.56
-      return { width: 8, path: `M-2 ${middle}q2 ${pull} 4 0t4 0 4 0`, stroke: 1.1 }
+      const pull = height * 0.5
+      return { width: 8, path: `M-2 ${middle}q2 ${pull} 4 0t4 0 4 0`, stroke: 1 }
     }
     case 'line':
       return { width: 8, path: `M0 ${middle}h8`, stroke: Math.max(1.6, height / 12) }
