@@ -9,6 +9,8 @@ export interface Stretch {
   end: number
   /** slots before the first move, which may serve as history for the dead time */
   lead: number
+  /** the move stands out from what PV does at rest, so that it and not the disturbances decides the fit */
+  clear: boolean
   /** largest single move of the set point (in manual: of OP), share of its span; 0 for natural ones */
   size: number
   usable: boolean
@@ -40,7 +42,7 @@ export function findStretches(record: PreparedRecord, setup: LoopSetup, outages:
   const opSpan = setup.opHigh - setup.opLow
   const pvSpan = setup.pvHigh - setup.pvLow
   const found: Stretch[] = []
-  const judge = (kind: StretchKind, begin: number, end: number, lead: number, size = 0) => { found.push({ kind, begin, end, lead, size, ...judged(record, setup, outages, begin, end) }) }
+  const judge = (kind: StretchKind, begin: number, end: number, lead: number, size = 0) => { found.push({ kind, begin, end, lead, size, clear: kind !== 'natural' && standsOut(record.pv, begin, begin + lead, size * pvSpan), ...judged(record, setup, outages, begin, end) }) }
 
   for (const whole of record.stretches) {
     for (const [from, to, manual] of runs(flags, whole.begin, whole.end)) {
@@ -68,6 +70,19 @@ export function findStretches(record: PreparedRecord, setup: LoopSetup, outages:
   const liveliest = natural.filter(s => s.usable).sort((a, b) => b.opMove - a.opMove).slice(0, MOST_NATURAL)
   const shown = liveliest.length ? liveliest : natural.sort((a, b) => (b.end - b.begin) - (a.end - a.begin)).slice(0, 1)
   return [...found.filter(s => s.kind !== 'natural'), ...shown].sort((a, b) => a.begin - b.begin)
+}
+
+/** Five standard deviations of PV before the move; the size of an OP move is taken as if the process gain were 1. */
+function standsOut(pv: Float64Array, from: number, to: number, size: number): boolean {
+  let [n, mean, squares] = [0, 0, 0]
+  for (let i = from; i < to; i++) {
+    if (pv[i] !== pv[i]) continue
+    n++
+    const d = pv[i] - mean
+    mean += d / n
+    squares += d * (pv[i] - mean)
+  }
+  return n > 10 && size > 5 * Math.sqrt(squares / n)
 }
 
 /** Runs of one kind of mode: [from, to, off normal]. */

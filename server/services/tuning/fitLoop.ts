@@ -43,7 +43,7 @@ export function fitLoop(record: LoopRecord, setup: LoopSetup, outages: readonly 
     // a cycle looks the same one period later, and half a period later with the other sign
     const longest = onOff ? Math.max(2, Math.floor(shortestPhase(prepared.op!, stretches) / block)) : leads.length === stretches.length ? Math.min(...leads) : quarter
     // the least telling of the stretches decides how careful the fit must be
-    const excitation = !onOff && stretches.some(s => s.kind === 'natural') ? 'natural' as const : onOff || stretches.some(s => s.kind === 'setpointMove') ? 'setpointStep' as const : 'manualMove' as const
+    const excitation = !onOff && stretches.some(s => !s.clear) ? 'natural' as const : onOff || stretches.some(s => s.kind === 'setpointMove') ? 'setpointStep' as const : 'manualMove' as const
     return compareModels(stretches.map(s => percentOf(prepared, setup, s, block)), {
       interval: intervalS, excitation, hold: onOff || excitation === 'manualMove' ? 'zero' : 'first',
       maximumDeadTime: Math.min(quarter, longest) * intervalS,
@@ -115,17 +115,28 @@ function shortestPhase(op: Float64Array, stretches: Stretch[]): number {
 }
 
 function toComparison({ candidates, best, reason }: ModelComparison, { action }: LoopSetup, openLoop: boolean): Comparison {
-  const fits = candidates.map(({ kind, fit }): FitView => {
-    const known = usableFit(fit)
-    // a controller that works has the sign of the process; the other sign is the controller's own, seen backwards
-    const backwards = !openLoop && fit.status === 'ok' && (fit.model.processGain > 0) !== (action === 'reverse')
+  const found = candidates.map(c => usableFit(c.fit))
+  const mostExplained = Math.max(...found.map(f => f?.fitPercent ?? -Infinity))
+  const fits = candidates.map(({ kind, fit }, k): FitView => {
+    const known = found[k]
+    const doubt = fit.status === 'ok' ? doubtOf(fit, found, mostExplained, action, openLoop) : fit.reason
     return {
-      kind, status: fit.status === 'ok' && !backwards ? 'ok' : 'refused',
-      reason: backwards ? `The sign of the gain does not fit the ${action} action of the loop: either the set-up is wrong, or the data show the controller and not the process.` : fit.status === 'ok' ? '' : fit.reason, model: known?.model ?? null,
+      kind, status: doubt ? 'refused' : 'ok', reason: doubt, model: known?.model ?? null,
       parameters: known?.parameters ?? {}, fitPercent: known?.fitPercent ?? null, residual: known?.residualStandardDeviation ?? null, residualCorrelation: known?.residualCorrelation ?? null, samples: known?.samples ?? 0,
     }
   })
   return { best: candidates.find(c => c.fit === best)!.kind, reason, fits }
+}
+
+/** Why a fit that is sound by itself is not to be used beside what else is known; empty when it is. */
+function doubtOf(fit: ModelFit, found: (ModelFit | null)[], mostExplained: number, action: LoopSetup['action'], openLoop: boolean): string {
+  const gain = fit.parameters.processGain
+  // a controller that works has the sign of the process; the other sign is the controller's own, seen backwards
+  if (!openLoop && (gain.value > 0) !== (action === 'reverse')) return `The sign of the gain does not fit the ${action} action of the loop: either the set-up is wrong, or the data show the controller and not the process.`
+  if (fit.fitPercent < mostExplained - 20) return 'It explains much less of the movement of PV than another kind of model.'
+  const other = found.find(f => f && fit.model.kind === 'fopdt' && f.model.kind === 'sopdt' && f.fitPercent > fit.fitPercent - 5 && Math.abs(f.parameters.processGain.value / gain.value - 1) > 0.1 && (f.parameters.processGain.value < gain.low || f.parameters.processGain.value > gain.high))
+  if (other) return `With a second lag, which explains as much, the gain becomes ${Number(other.parameters.processGain.value.toPrecision(3))} instead of ${Number(gain.value.toPrecision(3))}: the data do not say which.`
+  return ''
 }
 
 function drawing({ pv, sp, op, intervalS }: PreparedRecord, setup: LoopSetup, s: Stretch, block: number, simulated: Float64Array | null): StretchView['drawing'] {
