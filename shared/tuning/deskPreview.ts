@@ -24,7 +24,7 @@ export interface PreviewCurve { name: string, response: ClosedLoopResponse, figu
 export interface Preview { setpoint: PreviewCurve[], load: PreviewCurve[] }
 export interface Candidate { name: string, ideal: IdealPid, setpointFilterTime: number }
 
-const STEPS = 4000
+const STEPS = 2500
 
 /** Old against new under the same conditions, in % of span. Output limits are 0 and 100 %. A few ms for two candidates. */
 export function deskPreview(candidates: readonly Candidate[], c: PreviewConditions): Preview {

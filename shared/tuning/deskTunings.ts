@@ -81,12 +81,18 @@ export function horizonFor(model: ProcessModel, controllers: readonly IdealPid[]
   return Math.min(Math.max(...each, 10 * first.deadTime, 3 * lag, 1), 60 * Math.max(scale, ...(first.kind === 'integrating' ? each.map(h => h / 8) : [0])))
 }
 
+/** s: fine enough for a figure of three digits, a whole part of the dead time, and no finer, because the slider waits for it. */
+function stepFor(model: ProcessModel, { derivativeTime, derivativeFilterFactor = 10 }: IdealPid, horizon: number): number {
+  const wanted = Math.min(horizon / 2500, ...(derivativeTime > 0 ? [Math.max(derivativeTime / derivativeFilterFactor / 2, horizon / 8000)] : []), ...(model.deadTime > 0 ? [Math.max(model.deadTime / 20, horizon / 6000)] : []))
+  return model.deadTime > wanted ? model.deadTime / Math.ceil(model.deadTime / wanted) : wanted
+}
+
 /** Margins and figures of one tuning; about 3 ms. Limits, noise and valve are left out, so that tunings compare like for like. */
 export function deskFigures(model: ProcessModel, ideal: IdealPid, horizon: number, noise: { standardDeviation: number, intervalS: number } | null, setpointFilterTime = 0): DeskFigures {
   const m = margins(model, ideal)
   const base = { stable: m.stable, maximumSensitivity: m.maximumSensitivity, gainMargin: m.gainMargin, phaseMarginDeg: m.phaseMarginDeg, delayMargin: m.delayMargin }
   if (!m.stable) return { ...base, setpointIae: Infinity, loadIae: Infinity, overshootPercent: NaN, peakOutput: NaN, noiseTravelPerHour: null }
-  const [run] = compareTunings([{ controller: ideal, setpointFilterTime }], { model, horizon, setpointChange: 1, upsets: [{ at: 0, size: 1 }] })
+  const [run] = compareTunings([{ controller: ideal, setpointFilterTime }], { model, horizon, step: stepFor(model, ideal, horizon), setpointChange: 1, upsets: [{ at: 0, size: 1 }] })
   return {
     ...base, setpointIae: run.setpoint.figures.iae, loadIae: run.load.figures.iae, overshootPercent: run.setpoint.figures.overshootPercent, peakOutput: Math.abs(run.setpoint.figures.peakOutputChange),
     noiseTravelPerHour: noise && noise.standardDeviation > 0 ? valveTravelFromNoise(model, ideal, { standardDeviation: noise.standardDeviation, interval: noise.intervalS, normal: noiseFor() }) : null,
