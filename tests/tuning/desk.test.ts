@@ -7,6 +7,7 @@ import { deskFigures, deskTunings, horizonFor } from '../../shared/tuning/deskTu
 import { settingsText } from '../../shared/tuning/settingsText'
 import { idealOf, settingNames, shownAs, storedController } from '../../shared/tuning/storedController'
 import { makeSheetSchema } from '../../shared/schemas/tuning'
+import { expectedOf } from '../../shared/tickets/expectedOf'
 
 const model: ProcessModel = { kind: 'fopdt', processGain: 1, timeConstant: 8, deadTime: 1 }
 const second = { form: 'ideal', gainUnit: 'gain', timeUnit: 's' } as const
@@ -155,5 +156,13 @@ describe('words', () => {
     const stored = { form: 'onOff', action: 'reverse', gain: 1, gainUnit: 'gain', integralTime: null, derivativeTime: null, timeUnit: 's', filterTimeS: null, setpointWeight: null } as const
     expect(storedController(stored)).toBeNull()
     expect(storedController({ ...stored, form: 'ideal', gain: null })).toBeNull()
+  })
+})
+
+describe('expectation of a ticket', () => {
+  it('is that of the newest sheet of each loop', () => {
+    const sheet = (tag: string, sheetId: number, expectedIaeRatio: number | null) => ({ kind: 'changeSheet', data: { tag, sheetId, expectedIaeRatio } })
+    expect(expectedOf([sheet('A', 1, 0.5), { kind: 'comment', data: {} }, sheet('B', 2, null), sheet('A', 3, 0.4)])).toEqual([{ tag: 'A', sheetId: 3, ratio: 0.4 }, { tag: 'B', sheetId: 2, ratio: null }])
+    expect(expectedOf([])).toEqual([])
   })
 })
