@@ -12,7 +12,7 @@ const schema = z.object({
   ADMIN_EMAIL: z.email('must be an e-mail address').optional(),
   ADMIN_PASSWORD: z.string().min(12, 'must have at least 12 characters').optional(),
   UPLOAD_LIMIT_BYTES: z.coerce.number().int().positive().default(20 * 1024 ** 3),
-  // photos and files of tickets: a bucket of any S3-compatible service instead of DATA_DIR/files
+  // photos and files of tickets: a bucket of any S3-compatible service instead of DATA_DIR/attachments
   FILES_S3_BUCKET: z.string().min(1).optional(),
   FILES_S3_ENDPOINT: z.url('must be an address such as https://s3.site.example').optional(),
   FILES_S3_REGION: z.string().min(1).default('auto'),

@@ -7,7 +7,7 @@ import { environment } from './environment'
 let mounted = false
 
 /**
- * Nitro's storage `files`: the folder `files` in DATA_DIR, or the bucket that FILES_S3_* name (any S3-compatible
+ * Nitro's storage `files`: the folder `attachments` in DATA_DIR, which a backup holds too, or the bucket that FILES_S3_* name (any S3-compatible
  * service). Mounted on first use, because the folder is known only when the server runs.
  */
 export function fileStorage(): FileStorage {
@@ -15,7 +15,7 @@ export function fileStorage(): FileStorage {
     const e = environment()
     useStorage().mount('files', e.FILES_S3_BUCKET
       ? s3Driver({ bucket: e.FILES_S3_BUCKET, endpoint: e.FILES_S3_ENDPOINT!, region: e.FILES_S3_REGION, accessKeyId: e.FILES_S3_KEY!, secretAccessKey: e.FILES_S3_SECRET! })
-      : fsDriver({ base: resolve(e.DATA_DIR, 'files') }))
+      : fsDriver({ base: resolve(e.DATA_DIR, 'attachments') }))
     mounted = true
   }
   return useStorage('files') as unknown as FileStorage
