@@ -7,7 +7,7 @@ import type { Comparison, FitView, ModelAnswer, StretchView } from '../../../sha
 import { findStretches, preparedBetween, type Stretch } from './findStretches'
 
 /** What is fitted on its own; more than an engineer compares at a glance. */
-const MOST_FITTED = 8
+const MOST_FITTED = 6
 const MOST_SAMPLES_OF_A_FIT = 1200
 const DRAWN = 240
 
