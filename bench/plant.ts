@@ -47,16 +47,23 @@ export class Plant {
 
   async startWorkers(n: number, threads?: number): Promise<void> {
     for (let i = 0; i < n; i++) this.workers.push(this.launch('.build/worker/worker.mjs', threads ? { WORKER_THREADS: String(threads) } : {}))
+    await this.listeners(n)
+  }
+
+  /** Waits until so many workers listen. */
+  private async listeners(n: number): Promise<void> {
     for (;;) {
       const { rows } = await this.db.raw(`select count(*)::int as n from pg_stat_activity where application_name = 'fettle-listener' and datname = current_database()`)
-      if (rows[0].n >= n) return
+      if (rows[0].n === n) return
       await new Promise(r => setTimeout(r, 20))
     }
   }
 
   async stopWorkers(): Promise<void> {
+    if (this.workers.length === 0) return
     await Promise.all(this.workers.map(stop))
     this.workers = []
+    await this.listeners(0)
   }
 
   async get<T = any>(path: string): Promise<T> {

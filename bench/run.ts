@@ -124,7 +124,7 @@ async function upload(plant: Plant): Promise<void> {
     const [warm, copyWarm] = await alternate(TIMES, oneUpload, oneCopy)
     report('upload of a week, warm worker', copyWarm / warm, `the same with a worker that has worked before ${(warm / 1000).toFixed(1)} s, against COPY ${(copyWarm / 1000).toFixed(1)} s`, { least: 6 }, { warm, copyWarm })
     const row = await plant.db('imports').orderBy('id', 'desc').first()
-    console.log(`  of it reading ${row.mapping.readSeconds} s; peak memory of the worker ${peakMb(plant.workers[0]).toFixed(0)} MB`)
+    console.log(`  of it reading ${row.mapping.readSeconds.toFixed(1)} s, assessing ${((row.finished_at - Date.parse(row.mapping.assessingSince)) / 1000).toFixed(1)} s; peak memory of the worker ${peakMb(plant.workers[0]).toFixed(0)} MB`)
   }
   else { await oneCopy() }
   if (runs('storing')) {
@@ -197,7 +197,7 @@ async function linearity(plant: Plant): Promise<void> {
 
 /** Two worker processes against one, each with one thread of computing: the assessment of many loop-weeks. */
 async function workers(plant: Plant): Promise<void> {
-  const n = args.quick ? 40 : 500
+  const n = args.quick ? 120 : 500
   const path = file(`workers-${n}.csv`)
   await plant.clear()
   await makeExport({ path, loops: n, days: 1, intervalS: 10, layout: 'wide', seed: 2 })
@@ -214,8 +214,8 @@ async function workers(plant: Plant): Promise<void> {
       })
       while (Number((await plant.db('weeks_due').count())[0].count) > 0) await new Promise(r => setTimeout(r, 10))
     }
-    // the start of threads is not what is measured
-    await due(loops.slice(0, 16).map(l => l.id))
+    // the start of threads and their first compilation are not what is measured
+    await due(loops.slice(0, 40 * count).map(l => l.id))
     const started = performance.now()
     await due(loops.map(l => l.id))
     const ms = performance.now() - started
