@@ -11,7 +11,8 @@ import { CAUSES } from '../shared/assessment/simulation/scenario'
 import { VERDICTS, type Verdict } from '../shared/assessment/types'
 import { LOOP_TYPES, runCases, type Case, type CaseResult } from './simulatedCases'
 
-export const FIRST_SEED = 5_000_000
+// Never looked at while rules were written: take a new one after wrong cases of this set were looked at.
+export const FIRST_SEED = 7_000_000
 const option = (name: string) => { const i = process.argv.indexOf(`--${name}`); return i > 0 ? process.argv[i + 1] : undefined }
 const seeds = Number(option('seeds') ?? 12)
 
