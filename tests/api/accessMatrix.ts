@@ -17,7 +17,7 @@ export const accessMatrix: AccessRow[] = [
     'OPTIONS /api/uploads', 'POST /u/[token]'),
   // everybody signed in reads everything; what a machine may read too
   ...rows('viewer', ['read'],
-    'GET /api/areas', 'GET /api/outages', 'GET /api/weeks', 'GET /api/plant', 'GET /api/benefit', 'GET /api/groups', 'GET /api/loops', 'GET /api/loops/[tag]', 'GET /api/loops/[tag]/trend',
+    'GET /api/areas', 'GET /api/outages', 'GET /api/weeks', 'GET /api/plant', 'GET /api/benefit', 'GET /api/groups', 'GET /api/loops', 'GET /api/loops/[tag]', 'GET /api/loops/[tag]/trend', 'GET /api/loops/[tag]/change-sheets', 'GET /api/change-sheets/[id]',
     'GET /api/tickets', 'GET /api/tickets/[id]', 'GET /api/tickets/[id]/proof', 'GET /api/tickets/[id]/files/[fileId]'),
   ...rows('viewer', [],
     'GET /api/auth/me', 'GET /api/account', 'PATCH /api/account', 'POST /api/account/password', 'GET /api/people/names', 'GET /api/settings',
