@@ -42,7 +42,7 @@ export function findStretches(record: PreparedRecord, setup: LoopSetup, outages:
   const opSpan = setup.opHigh - setup.opLow
   const pvSpan = setup.pvHigh - setup.pvLow
   const found: Stretch[] = []
-  const judge = (kind: StretchKind, begin: number, end: number, lead: number, size = 0) => { found.push({ kind, begin, end, lead, size, clear: kind !== 'natural' && standsOut(record.pv, begin, begin + lead, size * pvSpan), ...judged(record, setup, outages, begin, end) }) }
+  const judge = (kind: StretchKind, begin: number, end: number, lead: number, size = 0) => { found.push({ kind, begin, end, lead, size, clear: kind !== 'natural' && standsOut(record.pv, begin + (lead >> 1), begin + lead, size * pvSpan), ...judged(record, setup, outages, begin, end) }) }
 
   for (const whole of record.stretches) {
     for (const [from, to, manual] of runs(flags, whole.begin, whole.end)) {
@@ -72,7 +72,7 @@ export function findStretches(record: PreparedRecord, setup: LoopSetup, outages:
   return [...found.filter(s => s.kind !== 'natural'), ...shown].sort((a, b) => a.begin - b.begin)
 }
 
-/** Five standard deviations of PV before the move; the size of an OP move is taken as if the process gain were 1. */
+/** Five standard deviations of PV in the second half of the time before the move, when an earlier move has faded; the size of an OP move is taken as if the process gain were 1. */
 function standsOut(pv: Float64Array, from: number, to: number, size: number): boolean {
   let [n, mean, squares] = [0, 0, 0]
   for (let i = from; i < to; i++) {

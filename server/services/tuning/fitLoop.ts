@@ -133,7 +133,7 @@ function doubtOf(fit: ModelFit, found: (ModelFit | null)[], mostExplained: numbe
   const gain = fit.parameters.processGain
   // a controller that works has the sign of the process; the other sign is the controller's own, seen backwards
   if (!openLoop && (gain.value > 0) !== (action === 'reverse')) return `The sign of the gain does not fit the ${action} action of the loop: either the set-up is wrong, or the data show the controller and not the process.`
-  if (fit.fitPercent < mostExplained - 20) return 'It explains much less of the movement of PV than another kind of model.'
+  if (fit.fitPercent < mostExplained - 10) return 'It explains much less of the movement of PV than another kind of model.'
   const other = found.find(f => f && fit.model.kind === 'fopdt' && f.model.kind === 'sopdt' && f.fitPercent > fit.fitPercent - 5 && Math.abs(f.parameters.processGain.value / gain.value - 1) > 0.1 && (f.parameters.processGain.value < gain.low || f.parameters.processGain.value > gain.high))
   if (other) return `With a second lag, which explains as much, the gain becomes ${Number(other.parameters.processGain.value.toPrecision(3))} instead of ${Number(gain.value.toPrecision(3))}: the data do not say which.`
   return ''
