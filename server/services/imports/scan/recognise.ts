@@ -33,15 +33,15 @@ const HEADER_LINES = 25
 
 /** Finds out how an export is laid out. Throws UnreadableFile when there is no header it can understand. */
 export async function recognise(file: TextFile, options: RecogniseOptions = {}): Promise<Recognition> {
-  const text = (await firstText(file, 512 * 1024)).replace(/^\uFEFF/, '')
+  const text = (await firstText(file, 256 * 1024)).replace(/^\uFEFF/, '')
   const lines = text.split(/\r?\n/)
-  if (lines.length > 1 && text.length >= 500 * 1024) lines.pop()
+  if (lines.length > 1 && text.length >= 250 * 1024) lines.pop()
   const found = findHeader(lines, options)
   if (!found) {
     throw new UnreadableFile('No header was found: a wide file needs a time column and columns such as TIC-1204.PV, a long file the columns timestamp, tag and value.')
   }
   const { delimiter, headerAt, headers, layout } = found
-  const rows = lines.slice(headerAt + 1).filter(line => line.trim() !== '').slice(0, 500).map(line => cellsOf(line, delimiter))
+  const rows = lines.slice(headerAt + 1).filter(line => line.trim() !== '').slice(0, 100).map(line => cellsOf(line, delimiter))
   const signals = layout === 'wide' ? headers.map(h => signalFor(h, options)) : headers.map(() => null)
   const tagColumn = layout === 'long' ? headers.findIndex(isTagHeader) : -1
   const valueColumn = layout === 'long' ? headers.findIndex(isValueHeader) : -1
