@@ -38,7 +38,7 @@ describe('the tuning desk', () => {
     await page.getByRole('region', { name: 'Stretches found' }).waitFor({ timeout: 60_000 })
     expect(await page.getByRole('checkbox', { name: /^Use the stretch/ }).count()).toBeGreaterThan(3)
     await page.getByRole('img', { name: /Fit over data.*PV by the model/ }).waitFor()
-    await page.getByRole('button', { name: 'Use the model first order with dead time' }).click()
+    await page.getByRole('button', { name: 'Use it: first order with dead time' }).click()
     await page.getByText('On the desk:').waitFor()
     // what was built in: 1.6 % per %, 400 s, 80 s
     expect(await page.getByText('On the desk:').locator('..').textContent()).toMatch(/gain 1\.[56]\d? % per %/)
@@ -88,7 +88,7 @@ describe('the tuning desk', () => {
   it('shows an on-off loop its own cycle', async () => {
     await page.goto(new URL(desk('TIC-5502'), page.url()).href)
     await page.getByRole('button', { name: 'Find a model in the data' }).click()
-    await page.getByRole('button', { name: 'Use the model integrating with dead time' }).click({ timeout: 60_000 })
+    await page.getByRole('button', { name: 'Use it: integrating with dead time' }).click({ timeout: 60_000 })
     await page.getByText('The week agrees with what band, dead time and lag make.').waitFor()
     expect(await broken(page)).toEqual([])
   })
