@@ -107,7 +107,8 @@ export function useOutbox() {
   }
   if (!loaded) {
     loaded = true
-    void reload().then(flush)
+    // a browser that keeps nothing says so when something is to be kept
+    void reload().then(flush, () => {})
     window.addEventListener('online', () => { void flush() })
     document.addEventListener('visibilitychange', () => { if (document.visibilityState === 'visible') void flush() })
     setInterval(() => { if (items.value.some(i => !i.refused)) void flush() }, 15_000)
