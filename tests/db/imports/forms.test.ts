@@ -109,6 +109,14 @@ describe('local times', () => {
   })
 })
 
+describe('a very wide file', () => {
+  it('of 6,000 loops is recognised by a header longer than a first look', async () => {
+    const tags = Array.from({ length: 6000 }, (_, i) => `AREA-12-FURNACE-LINE-3-ZONE-TIC-${10_000 + i}`)
+    const done = await upload(scratch.db, { text: `time,${tags.map(t => `${t}.PV`).join()}\n2026-11-23T06:00:00Z,${tags.map((_, i) => i).join()}\n` })
+    expect(done).toMatchObject({ status: 'assessing', rows: 1, samples: 6000, loops: 6000 })
+  })
+})
+
 describe('unknown loops', () => {
   it('are created with a type from the letters of the tag and a guessed range', async () => {
     await upload(scratch.db, { file: 'good/wide-comma.csv' }, { unknown: 'create' })

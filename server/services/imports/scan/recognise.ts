@@ -33,9 +33,12 @@ const HEADER_LINES = 25
 
 /** Finds out how an export is laid out. Throws UnreadableFile when there is no header it can understand. */
 export async function recognise(file: TextFile, options: RecogniseOptions = {}): Promise<Recognition> {
-  const text = (await firstText(file, 256 * 1024)).replace(/^\uFEFF/, '')
-  const lines = text.split(/\r?\n/)
-  if (lines.length > 1 && text.length >= 250 * 1024) lines.pop()
+  // thousands of loops side by side make a header that fills the first look alone
+  let limit = 256 * 1024
+  let text = await firstText(file, limit)
+  if (text.length > limit * 0.9 && text.split('\n', 8).length < 8) text = await firstText(file, limit = 16 << 20)
+  const lines = text.replace(/^\uFEFF/, '').split(/\r?\n/)
+  if (lines.length > 1 && text.length > limit * 0.9) lines.pop()
   const found = findHeader(lines, options)
   if (!found) {
     throw new UnreadableFile('No header was found: a wide file needs a time column and columns such as TIC-1204.PV, a long file the columns timestamp, tag and value.')
