@@ -1,4 +1,3 @@
-// @ts-check
 import withNuxt from './.nuxt/eslint.config.mjs'
 
 /** Imports that a folder may not make, by what the path says; the sentence tells the rule of the house. */

@@ -1,5 +1,6 @@
 import type { H3Event } from 'h3'
-import { requireRole, type Caller } from './requireRole'
+import type { Caller } from '../../shared/types/people'
+import { requireRole } from './requireRole'
 
 /** Who may look at imports: any person, and a machine that may read or that may import and waits for its own upload. */
 export async function requireImportReader(event: H3Event): Promise<Caller> {

@@ -4,7 +4,8 @@ import { getHeader, setHeader } from 'h3'
 import type { UploadPlace } from '../services/imports/resumableUploads'
 import { environment } from './environment'
 import { refusal } from './refusal'
-import { requireRole, type Caller } from './requireRole'
+import type { Caller } from '../../shared/types/people'
+import { requireRole } from './requireRole'
 
 export const TUS_VERSION = '1.0.0'
 

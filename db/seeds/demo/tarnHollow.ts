@@ -272,7 +272,7 @@ function comeAndGo(line: DemoLine, story: Story, setup: LoopSetup, scenario: Loo
     }
   }
   const { valve } = scenario
-  const tight = { gain: setup.gain, integralTimeS: setup.integralTimeS }
+  const tight = { gain: setup.gain ?? 1, integralTimeS: setup.integralTimeS }
   // a stand-in for a process gain that falls with the load: seen from outside the same
   const calm = { gain: (setup.gain ?? 1) / (setup.type === 'level' ? 0.6 : 2.8), integralTimeS: (setup.integralTimeS ?? 1) * (setup.type === 'level' ? 6 : 1.6) }
   // where the calm tuning cannot hold the tolerance the loop was made tight for a reason, and stays so
