@@ -33,7 +33,7 @@ it('lets engineers fit and make sheets, and everybody read them', async () => {
 })
 it('names what is wrong with the input', async () => {
   const call = await server.as('engineer')
-  expect(await call('POST', '/api/loops/TIC-5501/models', { fromWeek: '2026-W60', toWeek: TUNING_WEEK })).toMatchObject({ status: 422, body: { data: { code: 'invalid_input', issues: [{ path: 'fromWeek' }] } } })
+  expect(await call('POST', '/api/loops/TIC-5501/models', { fromWeek: '2026-W00', toWeek: TUNING_WEEK })).toMatchObject({ status: 422, body: { data: { code: 'invalid_input', issues: [{ path: 'fromWeek' }] } } })
   expect((await call('POST', '/api/loops/NO-SUCH/models', body)).status).toBe(404)
   expect((await call('GET', '/api/change-sheets/99')).status).toBe(404)
   const sheet = await call('POST', '/api/loops/TIC-5501/change-sheets', { version: 1 })
