@@ -11,6 +11,7 @@ import type { SeedAnswer, SeedTask } from '../../threads/seedLoop'
 import { finishWeeks } from '../assessments/assessDue'
 import { loopSetup } from '../loops/loopSetup'
 import { getSettings } from '../settings'
+import { seedTickets } from './seedTickets'
 
 const WEEKS = 3
 const KEY = 'demoWeeks'
@@ -66,4 +67,5 @@ export async function seedPlant(db: Knex, run: (task: SeedTask) => Promise<SeedA
   // groups and changes are looked at once all loops are there
   await insertWeeksDue(db, [...new Set((await listLoopWeekKeys(db, {})).map(k => k.week))])
   await finishWeeks(db)
+  await seedTickets(db, { startMs: weeks.startMs, zone: weeks.zone, now })
 }
