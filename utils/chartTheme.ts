@@ -1,3 +1,5 @@
+import { formatNumber } from '#shared/format/number'
+
 /** Colours of the page as a chart needs them: plain strings, read when the theme changes. */
 export function chartColours() {
   const style = getComputedStyle(document.documentElement)
@@ -17,3 +19,6 @@ export function chartBase(colours: ReturnType<typeof chartColours>) {
     axis: { labels: { style: { ...AXIS_FONT, colors: colours.quiet } }, axisBorder: { color: colours.line }, axisTicks: { color: colours.line }, title: { style: { ...AXIS_FONT, fontWeight: 400, color: colours.quiet } } },
   }
 }
+
+/** A label of an axis: what is only the rounding of the library's steps is 0. */
+export const axisNumber = (value: number): string => formatNumber(Math.abs(value) < 1e-12 ? 0 : Number(value.toPrecision(6)))

@@ -1,4 +1,5 @@
 import { fromIdeal } from '../control/forms/fromIdeal'
+import { integralTimeToSeconds, secondsPerUnit } from '../control/forms/timeUnits'
 import { toIdeal } from '../control/forms/toIdeal'
 import type { Conversion, ControllerAction, ControllerForm, DisplayedController, IdealPid } from '../control/types'
 
@@ -15,11 +16,15 @@ export interface StoredTuning {
   setpointWeight: number | null
 }
 
-/** The controller as the control system shows it; null for on-off control and where the gain is not known. */
+/**
+ * The controller as the control system shows it; null for on-off control and where the gain is not known.
+ * The set-up always holds an integral *time*. In the parallel form, whose terms stand beside each other, it is the time
+ * whose reciprocal is the integral gain, as the assessment and the simulator read it too.
+ */
 export function storedController(loop: StoredTuning): DisplayedController | null {
   if (loop.form === 'onOff' || loop.gain === null || !(loop.gain > 0)) return null
   return {
-    form: loop.form, action: loop.action, gain: loop.gain, gainUnit: loop.gainUnit, integral: loop.integralTime, derivative: loop.derivativeTime, timeUnit: loop.timeUnit,
+    form: loop.form, action: loop.action, gain: loop.gain, gainUnit: loop.gainUnit, integral: loop.form === 'parallel' && loop.integralTime ? secondsPerUnit(loop.timeUnit) / integralTimeToSeconds(loop.integralTime, loop.timeUnit) : loop.integralTime, derivative: loop.derivativeTime, timeUnit: loop.timeUnit,
     ...(loop.setpointWeight !== null && { setpointWeight: loop.setpointWeight }), ...(loop.filterTimeS !== null && loop.filterTimeS > 0 && { measurementFilterTime: loop.filterTimeS }),
   }
 }
