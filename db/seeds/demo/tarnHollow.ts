@@ -11,7 +11,7 @@ import { simulatePlantLoop, type PlantLoop, type PlantMemory } from '../../../sh
 import type { Cause, LoopScenario, SetpointProgramme, SimulatedLoop, SimulationEvent } from '../../../shared/assessment/simulation/scenario'
 import { nextWeek, weekFrame, weekOf } from '../../../shared/assessment/week/isoWeek'
 import { DEMO_LINES, type DemoLine } from './tarnHollowLoops'
-import { CASCADES, GROUP, OUTAGE, STORIES, type Story } from './tarnHollowStories'
+import { BUMP_TESTS, CASCADES, GROUP, OUTAGE, STORIES, type Story } from './tarnHollowStories'
 
 export interface DemoLoop {
   setup: LoopSetup
@@ -150,6 +150,7 @@ function makeDemoLoop(line: DemoLine): Drawn {
   }
   tell(story, setup, scenario)
   if (story.fromDay === undefined && story.toDay === undefined) comeAndGo(line, story, setup, scenario)
+  bumpTests(line, setup, scenario)
   if (isOven) ({ setup, scenario } = oven(line, setup, scenario))
   if (isShuttle) shuttle(line, setup, scenario)
   if (SECONDARIES.has(line.tag)) secondary(line, setup, scenario)
@@ -237,6 +238,19 @@ function tell({ cause, fromDay, toDay }: Story, setup: LoopSetup, scenario: Loop
     default: return
   }
   scenario.truth.spans = [{ fromS: from, toS: to }]
+}
+
+/**
+ * Set-point steps that somebody made on purpose, quiet before and after, so that the tuning desk has something to read a
+ * model from: up, down, up and back, in the middle of the week.
+ */
+function bumpTests(line: DemoLine, setup: LoopSetup, scenario: LoopScenario): void {
+  const days = BUMP_TESTS[line.tag]
+  if (!days || scenario.setpoint.kind !== 'constant') return
+  const { value } = scenario.setpoint
+  const size = 0.08 * (setup.pvHigh - setup.pvLow)
+  const hold = Math.max(2 * HOUR, 8 * setup.settlingS)
+  scenario.setpoint = { kind: 'points', start: value, points: days.flatMap(day => [1, 0, -1, 0].map((up, k) => ({ at: Math.round(day * DAY + k * hold), value: value + up * size, ramp: false }))) }
 }
 
 /** The feed-water valve sticks at high fire, every afternoon. */

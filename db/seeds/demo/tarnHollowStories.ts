@@ -57,3 +57,6 @@ export const STORIES: Readonly<Record<string, Story>> = {
 }
 
 export const OUTAGE = { area: 'Presses', fromDay: 9 + 6 / 24, toDay: 9 + 16 / 24, reason: 'Planned stop of the presses for die change and oil service' }
+
+/** Loops on which the set point was stepped on purpose, and the days on which that began. */
+export const BUMP_TESTS: Readonly<Record<string, number[]>> = { 'TIC-1304': [15.3, 18.3], 'TIC-843': [15.3, 18.3] }
