@@ -14,6 +14,12 @@ const MOST_CYCLES = 24
 const LOWEST_RATIO = Math.log(4)
 /** Normal quantile by which short averages must exceed a part of that ratio, because a single look is exponentially distributed. */
 const QUANTILE = 3.5
+/** Bins that matter at any length, and samples of a piece (a power of four, which the transform likes best). */
+const BINS = 2 * MOST_CYCLES + 1, PIECE = 64
+/** Bins either side of a peak at bin k that are its own. */
+const AWAY = Int32Array.from({ length: BINS }, (_, k) => Math.max(2, Math.round(0.2 * k)))
+/** Far above the rounding of running sums of inverse powers. */
+const SLACK = 0.2
 /** Two peaks nearer than this (logarithm of the ratio) are one unless a dip lies between them. */
 const NEAR = 0.6
 
@@ -27,14 +33,15 @@ const NEAR = 0.6
  * @param present 1 where the sample is there, length n
  * @param highestPeriod samples
  * @returns strongest first, at least 15 % apart, at most 8
- * Cost O(n log n). Source: Welch 1967 for the averaging; the rule for a peak is ours, its limits are checked on noise.
+ * Cost O(n) for each length. Source: Welch 1967 for the averaging; the rule for a peak is ours, its limits are checked on noise.
  */
 export function spectralPeaks(steps: Float64Array, present: Uint8Array, highestPeriod: number): SpectralPeak[] {
   const found: SpectralPeak[] = []
   const averages: Average[] = []
+  const totals = totalsOf(steps, present)
   for (let length = 64; length <= steps.length; length *= 2) {
     if (length / MOST_CYCLES > highestPeriod) break
-    averages.push(searchLength(steps, present, length, highestPeriod, found))
+    averages.push(searchLength(steps, totals, length, highestPeriod, found))
   }
   found.sort((a, b) => b.score - a.score)
   const kept: SpectralPeak[] = []
@@ -63,37 +70,87 @@ function areApart(one: number, other: number, averages: Average[]): boolean {
   return Math.log(Math.min(at(low), at(high)) / dip) > Math.log(4) + 3 * Math.sqrt(2 / segments)
 }
 
-function searchLength(steps: Float64Array, present: Uint8Array, length: number, highestPeriod: number, found: SpectralPeak[]): Average {
+/** Running totals: sum and number of the samples before each index. */
+interface Totals { sum: Float64Array, there: Int32Array }
+
+function totalsOf(steps: Float64Array, present: Uint8Array): Totals {
+  const sum = new Float64Array(steps.length + 1), there = new Int32Array(steps.length + 1)
+  for (let i = 0; i < steps.length; i++) {
+    sum[i + 1] = sum[i] + steps[i]
+    there[i + 1] = there[i] + present[i]
+  }
+  return { sum, there }
+}
+
+/** What one segment length needs, kept: Hann window in the order of the pieces, and their turns exp(-2 pi i k q / length). */
+interface Plan { window: Float64Array, turns: Float64Array }
+const plans = new Map<number, Plan>()
+
+function planOf(length: number): Plan {
+  let plan = plans.get(length)
+  if (plan) return plan
+  const stride = length / PIECE
+  plan = { window: new Float64Array(length), turns: new Float64Array(2 * BINS * stride) }
+  for (let q = 0, at = 0; q < stride; q++) {
+    for (let i = q; i < length; i += stride) plan.window[at++] = 0.5 - 0.5 * Math.cos(2 * Math.PI * (i + 0.5) / length)
+    for (let k = 0; k < BINS; k++) {
+      plan.turns[2 * (q * BINS + k)] = Math.cos(2 * Math.PI * k * q / length)
+      plan.turns[2 * (q * BINS + k) + 1] = -Math.sin(2 * Math.PI * k * q / length)
+    }
+  }
+  plans.set(length, plan)
+  return plan
+}
+
+const piece = new Float64Array(PIECE), part = new Float64Array(2 * PIECE)
+const low = new Float64Array(2 * BINS)
+
+/**
+ * The lowest bins of a windowed segment into `low`. Every length / 64-th sample makes a piece; the pieces' transforms are
+ * turned and added (decimation in time), which spares the bins that nobody looks at.
+ */
+function lowSpectrum(steps: Float64Array, from: number, length: number, mean: number, bins: number): void {
+  const { window, turns } = planOf(length)
+  const stride = length / PIECE
+  const transform = fft(PIECE)
+  low.fill(0)
+  for (let q = 0; q < stride; q++) {
+    for (let m = 0, i = from + q, w = q * PIECE; m < PIECE; m++, i += stride, w++) piece[m] = (steps[i] - mean) * window[w]
+    transform.forward(piece, part)
+    for (let k = 0, at = 2 * BINS * q; k < 2 * bins; k += 2, at += 2) {
+      const re = part[k], im = part[k + 1], c = turns[at], s = turns[at + 1]
+      low[k] += re * c - im * s
+      low[k + 1] += re * s + im * c
+    }
+  }
+}
+
+/** Working memory of searchLength, kept: fresh memory costs more than the sums. */
+let pool = new Float64Array(0)
+
+function searchLength(steps: Float64Array, totals: Totals, length: number, highestPeriod: number, found: SpectralPeak[]): Average {
   const first = Math.max(FEWEST_CYCLES, Math.ceil(length / highestPeriod))
   const last = Math.min(MOST_CYCLES, length >> 2)
   const bins = Math.min(2 * last, length >> 1) + 1
-  const window = new Float64Array(length)
-  for (let i = 0; i < length; i++) window[i] = 0.5 - 0.5 * Math.cos(2 * Math.PI * (i + 0.5) / length)
-  const segment = new Float64Array(length), spectrum = new Float64Array(2 * length)
-  const transform = fft(length)
   const hop = length >> 1
   const segments = Math.floor((steps.length - length) / hop) + 1
   // Running sums over the segments: any average is one difference.
-  const sums = new Float64Array((segments + 1) * bins)
+  if (pool.length < (segments + 1) * bins) pool = new Float64Array((segments + 1) * bins)
+  const sums = pool.fill(0, 0, bins)
   const used = new Int32Array(segments + 1)
   for (let j = 0; j < segments; j++) {
     // The last segment ends with the record.
     const from = j === segments - 1 ? steps.length - length : j * hop
-    let there = 0, mean = 0
-    for (let i = 0; i < length; i++) { there += present[from + i]; mean += steps[from + i] }
-    mean /= length
-    const good = there > 0.7 * length
+    const good = totals.there[from + length] - totals.there[from] > 0.7 * length
     used[j + 1] = used[j] + (good ? 1 : 0)
-    if (good) {
-      for (let i = 0; i < length; i++) segment[i] = (steps[from + i] - mean) * window[i]
-      transform.forward(segment, spectrum)
-    }
+    if (good) lowSpectrum(steps, from, length, (totals.sum[from + length] - totals.sum[from]) / length, bins)
     for (let k = 0, at = j * bins; k < bins; k++, at++) {
-      const re = spectrum[2 * k], im = spectrum[2 * k + 1]
+      const re = low[2 * k], im = low[2 * k + 1]
       sums[at + bins] = sums[at] + (good ? re * re + im * im : 0)
     }
   }
-  const power = new Float64Array(bins), logs = new Float64Array(bins + 1)
+  const power = new Float64Array(bins), logs = new Float64Array(bins + 1), inverse = new Float64Array(bins + 1)
+  let limitOf = 0, limit = 0, bound = 0
   for (let width = 1; ; width = Math.min(2 * width, segments)) {
     const stride = Math.max(1, width >> 1)
     for (let from = 0; from + width <= segments; from += stride) {
@@ -107,13 +164,23 @@ function searchLength(steps: Float64Array, present: Uint8Array, length: number, 
       if (!(floor > 0)) continue
       // Rounding of the running sums must not pass for an empty spectrum.
       floor = Math.max(floor, sums[(from + width) * bins + bins - 1]) * 1e-13
-      for (let k = 1; k < bins; k++) logs[k + 1] = logs[k] + Math.log(Math.max(power[k], floor))
-      const limit = LOWEST_RATIO + 3 * Math.log(1 - 1 / (9 * m) + QUANTILE / (3 * Math.sqrt(m))) + 1 / (2 * m) + 1 / (12 * m * m)
+      for (let k = 1; k < bins; k++) inverse[k + 1] = inverse[k] + 1 / Math.max(power[k], floor)
+      if (m !== limitOf) {
+        limitOf = m
+        limit = LOWEST_RATIO + 3 * Math.log(1 - 1 / (9 * m) + QUANTILE / (3 * Math.sqrt(m))) + 1 / (2 * m) + 1 / (12 * m * m)
+        bound = Math.exp(2 * limit - SLACK)
+      }
+      let logged = false
       for (let k = first; k <= last; k++) {
         if (!(power[k] > power[k - 1] && power[k] >= power[k + 1])) continue
-        const away = Math.max(2, Math.round(0.2 * k))
-        const below = Math.max(1, Math.floor(k / 2)), above = Math.min(bins - 1, 2 * k)
+        const away = AWAY[k]
+        const below = Math.max(1, k >> 1), above = Math.min(bins - 1, 2 * k)
         if (k + away >= above) continue
+        // The harmonic mean lies below the geometric one: what does not stand out of it needs no logarithms.
+        const sides = (inverse[k - away + 1] - inverse[below]) * (inverse[above + 1] - inverse[k + away])
+        if (power[k] * power[k] * sides < bound * (k - away + 1 - below) * (above + 1 - k - away)) continue
+        if (!logged) for (let j = 1; j < bins; j++) logs[j + 1] = logs[j] + Math.log(Math.max(power[j], floor))
+        logged = true
         const lower = (logs[k - away + 1] - logs[below]) / (k - away + 1 - below)
         const upper = (logs[above + 1] - logs[k + away]) / (above + 1 - k - away)
         const here = logs[k + 1] - logs[k]
