@@ -98,11 +98,10 @@ function alike(halves: { from: number, to: number, peak: number }[], from: numbe
   let large = 0
   for (let i = from; i < to; i++) if (halves[i].peak >= least) large++
   if (large < LARGE_SHARE * (to - from)) return false
-  for (let i = from; i < to; i++) {
-    insert(lengthOf, i - from, halves[i].to - halves[i].from)
-    insert(peakOf, i - from, halves[i].peak)
-  }
-  return spreadSorted(lengthOf) < 0.5 && spreadSorted(peakOf) < 0.45
+  for (let i = from; i < to; i++) insert(lengthOf, i - from, halves[i].to - halves[i].from)
+  if (!(spreadSorted(lengthOf) < 0.5)) return false
+  for (let i = from; i < to; i++) insert(peakOf, i - from, halves[i].peak)
+  return spreadSorted(peakOf) < 0.45
 }
 
 /** Insertion into the ascending first `count` values. */

@@ -38,7 +38,7 @@ export function recoveries(series: AnalysisSeries, settlingS: number, noise: num
     for (let i = 1; i < e.length; i++) if (Math.abs(series.sp[i] - series.sp[i - 1]) > 1e-6 * pvSpan) moves++
     if (moves < e.length / 20) {
       for (let i = 1; i < e.length; i++) {
-        if (Math.abs(series.sp[i] - series.sp[i - 1]) > 1e-6 * pvSpan) for (let k = i; k < Math.min(e.length, i + after); k++) e[k] = NaN
+        if (Math.abs(series.sp[i] - series.sp[i - 1]) > 1e-6 * pvSpan) e.fill(NaN, i, i + after)
       }
     }
   }
@@ -65,7 +65,7 @@ export function recoveries(series: AnalysisSeries, settlingS: number, noise: num
       if (!isInsufficient(i)) idle.push(i.index)
     }
     const last = Math.min(op.length, r.to + (r.to - r.from))
-    if (last - r.from >= 8 && op.subarray(r.from, last).every(v => v === v)) {
+    if (last - r.from >= 8 && isWhole(op, r.from, last)) {
       const a = areaIndex(op.subarray(r.from, last), { sampleIntervalS: intervalS })
       if (!isInsufficient(a)) area.push(a.index)
     }
@@ -79,6 +79,11 @@ export function recoveries(series: AnalysisSeries, settlingS: number, noise: num
     idleIndex: median(idle),
     areaIndex: median(area),
   }
+}
+
+function isWhole(x: Float64Array, from: number, to: number): boolean {
+  for (let i = from; i < to; i++) if (x[i] !== x[i]) return false
+  return true
 }
 
 function median(values: number[]): number {

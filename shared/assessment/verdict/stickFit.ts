@@ -8,7 +8,7 @@
  * Works without a regular oscillation; where nothing moves or PV follows upsets, neither explains PV and the figures stay near 0.
  * Source: the idea of Srinivasan, Rengaswamy, Narasimhan, Miller 2005, Control loop performance assessment 2. Hammerstein model
  * approach for stiction diagnosis; stem by He, Wang, Pottmann, Qin 2007; grid, output-error form and sign are ours.
- * Cost about 230 passes over at most 1200 samples.
+ * Cost about 150 passes over at most 1200 samples.
  */
 export interface StickFit {
   /** share of variance explained with a sticking stem, 0..1 */
@@ -30,7 +30,6 @@ const MOST = 1200
 const BREAKAWAY = [0.14, 0.24, 0.36, 0.5, 0.66, 0.84]
 const SLACK = [0, 0.5, 0.95]
 const LAGS = [0, 2, 8]
-const DELAYS = [0, 1, 3]
 
 /**
  * @param pv PV, or minus the control error where the set point moves; finite, regular, length n
@@ -45,7 +44,8 @@ export function stickFit(pv: Float64Array, op: Float64Array, sign: 1 | -1, windo
   if (n < 100) return null
   const from = (pv.length - n) >> 1
   const half = Math.max(4, Math.min(n >> 2, Math.round(window / 2)))
-  const y = freed(pv.subarray(from, from + n), half)
+  const y = new Float64Array(n + 3)
+  freed(pv.subarray(from, from + n), half, y)
   const u = op.subarray(from, from + n)
   let yy = 0
   for (let i = 0; i < n; i++) yy += y[i] * y[i]
@@ -57,6 +57,7 @@ export function stickFit(pv: Float64Array, op: Float64Array, sign: 1 | -1, windo
   const x = new Float64Array(n)
   const w = new Float64Array(n)
   const best = { explained: 0, fs: 0, fd: 0 }
+  const share = (zy: number, zz: number) => (zz > 0 && zy * sign > 0 ? (zy * zy) / (zz * yy) : 0)
   const tryStem = (): number => {
     let top = 0
     freed(stem, half, x)
@@ -70,18 +71,21 @@ export function stickFit(pv: Float64Array, op: Float64Array, sign: 1 | -1, windo
       }
       // lag and integrator bring slow parts back in
       freed(z, half, w)
-      for (const d of DELAYS) {
-        let zy = 0
-        let zz = 0
-        for (let i = d; i < n; i++) {
-          zy += w[i - d] * y[i]
-          zz += w[i - d] * w[i - d]
-        }
-        if (zz > 0 && zy * sign > 0) {
-          const r = (zy * zy) / (zz * yy)
-          if (r > top) top = r
-        }
+      // the delays 0, 1 and 3 in one pass; y ends in zeros
+      let zz3 = 0
+      let zy0 = 0
+      let zy1 = 0
+      let zy3 = 0
+      for (let i = 0; i < n; i++) {
+        const v = w[i]
+        if (i < n - 3) zz3 += v * v
+        zy0 += v * y[i]
+        zy1 += v * y[i + 1]
+        zy3 += v * y[i + 3]
       }
+      const zz1 = zz3 + w[n - 3] * w[n - 3] + w[n - 2] * w[n - 2]
+      const zz0 = zz1 + w[n - 1] * w[n - 1]
+      top = Math.max(top, share(zy0, zz0), share(zy1, zz1), share(zy3, zz3))
     }
     return top
   }
