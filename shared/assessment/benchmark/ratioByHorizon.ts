@@ -10,7 +10,7 @@ import { segmentModel, type BenchmarkEstimator, type SegmentModel } from './segm
  * figure read at a horizon beyond the dead time.
  *
  * @param segments as for varianceBenchmark, finite
- * @param options longestSamples: largest delay, integer >= 1; estimator and choice as for varianceBenchmark
+ * @param options longestSamples: largest delay, integer >= 1; estimator and choice as for varianceBenchmark; models: fitted already, then segments are not looked at
  * @returns ratio[b - 1] for b = 1..longestSamples, in (0, 1]; or insufficient when no segment carries a model
  * @throws RangeError on a horizon that is no integer >= 1 or a value that is not finite
  * Source: Desborough, Harris (1992), as varianceBenchmark; N. F. Thornhill, M. Oettinger, P. Fedenczuk (1999)
@@ -19,11 +19,11 @@ import { segmentModel, type BenchmarkEstimator, type SegmentModel } from './segm
  */
 export function ratioByHorizon(
   segments: readonly Float64Array[],
-  options: { longestSamples: number, estimator?: BenchmarkEstimator, choice?: OrderChoice },
+  options: { longestSamples: number, estimator?: BenchmarkEstimator, choice?: OrderChoice, models?: readonly SegmentModel[] },
 ): { status: 'ok', ratio: Float64Array } | Insufficient {
   const { longestSamples, estimator = 'leastSquares', choice = { maxOrder: 30 } } = options
   if (!Number.isInteger(longestSamples) || longestSamples < 1) throw new RangeError(`longestSamples must be an integer of at least 1, got ${longestSamples}`)
-  const fitted = segments.map(s => segmentModel(s, estimator, choice)).filter((s): s is SegmentModel => s !== null)
+  const fitted = options.models ?? segments.map(s => segmentModel(s, estimator, choice)).filter((s): s is SegmentModel => s !== null)
   if (fitted.length === 0) return insufficient('no segment carries a model: too short, constant or perfectly predictable')
   const ratio = new Float64Array(longestSamples)
   let variance = 0

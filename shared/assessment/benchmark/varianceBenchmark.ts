@@ -29,6 +29,8 @@ export interface VarianceBenchmark {
   segments: { samples: number, order: number, estimator: BenchmarkEstimator, ratio: number }[]
   /** segments left out: too short, constant or predictable without error */
   segmentsLeftOut: number
+  /** the fitted models, for ratioByHorizon */
+  models: SegmentModel[]
 }
 
 /** Above this ratio the asymptotic interval covers the true value in a third to a half of the cases only (measured). */
@@ -117,6 +119,7 @@ export function varianceBenchmark(
     samples,
     segments: perSegment.map(({ fit, ratio: own }) => ({ samples: fit.samples, order: fit.model.order, estimator: fit.estimator, ratio: Math.min(1, own) })),
     segmentsLeftOut: segments.length - fitted.length,
+    models: fitted,
   }
 }
 

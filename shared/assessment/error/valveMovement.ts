@@ -12,6 +12,8 @@
  * @param intervalS native interval, s
  * @param opSpan width of the OP range, > 0
  */
+import { select } from '../statistics/select'
+
 export interface ValveMovement {
   travelPerDay: number
   reversalsPerDay: number
@@ -93,6 +95,5 @@ function noiseSigma(op: Float64Array): number {
     if (x === x) d[k++] = x
   }
   if (k < 20) return 0
-  const sorted = d.subarray(0, k).sort()
-  return sorted[k >> 1] / (0.6745 * Math.sqrt(6))
+  return select(d.subarray(0, k), k >> 1) / (0.6745 * Math.sqrt(6))
 }

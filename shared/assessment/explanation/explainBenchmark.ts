@@ -40,7 +40,7 @@ export function explainBenchmark(explain: Explainer, series: AnalysisSeries | nu
     explain.set('varianceRatioHigh', v.high, v.samples, parameters, intermediates)
   }
   else explain.withholdAll(['varianceRatioLow', 'varianceRatioHigh'], sentence(v.intervalWithheld ?? 'No interval.'))
-  const curve = ratioByHorizon(segments, { longestSamples: Math.max(30, 2 * b) })
+  const curve = ratioByHorizon(segments, { longestSamples: Math.max(30, 2 * b), models: v.models })
   if (isInsufficient(curve)) return null
   return {
     horizonS: Array.from(curve.ratio, (_, i) => (i + 1) * series.intervalS),

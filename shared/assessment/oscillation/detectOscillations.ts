@@ -113,7 +113,7 @@ function examine(error: Float64Array, spectrum: StepSpectrum, variance: number, 
   const envelope = new Float64Array(n), smoothEnvelope = new Float64Array(n)
   let squares = 0, fourths = 0
   for (let i = 0; i < n; i++) {
-    envelope[i] = Math.hypot(a[2 * i], a[2 * i + 1])
+    envelope[i] = Math.sqrt(a[2 * i] * a[2 * i] + a[2 * i + 1] * a[2 * i + 1])
     const square = smooth[2 * i] ** 2 + smooth[2 * i + 1] ** 2
     smoothEnvelope[i] = Math.sqrt(square)
     squares += square

@@ -1,3 +1,5 @@
+import { select } from '../statistics/select'
+
 /**
  * Median spacing of ascending time stamps. O(n); a perfectly regular record is answered without a copy.
  *
@@ -19,30 +21,4 @@ export function medianInterval(t: Float64Array): number {
   const d = new Float64Array(n - 1)
   for (let i = 1; i < n; i++) d[i - 1] = t[i] - t[i - 1]
   return select(d, (d.length - 1) >> 1)
-}
-
-/** Hoare's selection: k-th smallest; reorders `a`. */
-function select(a: Float64Array, k: number): number {
-  let low = 0
-  let high = a.length - 1
-  while (low < high) {
-    const pivot = a[(low + high) >> 1]
-    let i = low
-    let j = high
-    while (i <= j) {
-      while (a[i] < pivot) i++
-      while (a[j] > pivot) j--
-      if (i <= j) {
-        const swap = a[i]
-        a[i] = a[j]
-        a[j] = swap
-        i++
-        j--
-      }
-    }
-    if (k <= j) high = j
-    else if (k >= i) low = i
-    else break
-  }
-  return a[k]
 }

@@ -1,3 +1,4 @@
+import { select } from '../statistics/select'
 import { variance } from '../statistics/variance'
 
 export interface QuantisationStep {
@@ -28,7 +29,10 @@ const FINEST = 1e-6
  * Reference: fixtures/reference/compression.json (quant_*). Cost O(n) for a signal on a coarse grid, O(n log n) at worst.
  */
 export function quantisationStep(x: Float64Array): QuantisationStep {
-  const known = x.filter(v => v - v === 0)
+  let length = 0
+  const finite = new Float64Array(x.length)
+  for (let i = 0; i < x.length; i++) if (x[i] - x[i] === 0) finite[length++] = x[i]
+  const known = finite.subarray(0, length)
   const changes = new Float64Array(known.length)
   let count = 0
   let smallest = Infinity
@@ -53,7 +57,7 @@ export function quantisationStep(x: Float64Array): QuantisationStep {
       if (remainder > OFF_GRID * step) remainders[off++] = remainder
     }
     if (off <= (1 - ON_GRID) * count) return { step, factor: step / Math.sqrt(variance(known)) }
-    candidate = remainders.subarray(0, off).sort()[off >> 1]
+    candidate = select(remainders.subarray(0, off), off >> 1)
   }
   return { step: 0, factor: 0 }
 }

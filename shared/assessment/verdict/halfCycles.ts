@@ -78,8 +78,8 @@ export function halfCycles(series: AnalysisSeries, least: number): HalfCycles {
     }
   }
   const enough = lengths.length >= RUN
-  const sortedLengths = Float64Array.from(lengths).sort()
-  const sortedPeaks = Float64Array.from(peaks).sort()
+  const sortedLengths = new Float64Array(lengths).sort()
+  const sortedPeaks = new Float64Array(peaks).sort()
   return {
     count: lengths.length,
     inRuns,

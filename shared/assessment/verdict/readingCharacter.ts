@@ -6,6 +6,7 @@
  * 5 % of span, while the neighbours agree within half of that. Cost O(n). Source: ours; the constant is that of the normal distribution.
  */
 import type { PreparedRecord } from '../preparation/prepareRecord'
+import { select } from '../statistics/select'
 
 export interface ReadingCharacter {
   /** median noise over the pieces, PV unit */
@@ -36,7 +37,7 @@ export function readingCharacter(prepared: PreparedRecord, pvSpan: number, quant
       if (d === d) scratch[k++] = d
     }
     if (k < Math.min(40, n / 2)) continue
-    levels.push(scratch.subarray(0, k).sort()[k >> 1] / scale)
+    levels.push(select(scratch.subarray(0, k), k >> 1) / scale)
   }
   if (!levels.length) return { noise: NaN, loudest: NaN, burstShare: NaN, burstRatio: NaN, wildShare: NaN }
   levels.sort((a, b) => a - b)

@@ -153,6 +153,6 @@ function freed(x: Float64Array, half: number, out = new Float64Array(x.length)):
 
 /** 5 % to 95 % quantile, widened to the full swing of a triangle. */
 function rangeOf(x: Float64Array): number {
-  const s = Float64Array.from(x).sort()
+  const s = x.slice().sort()
   return (s[Math.floor(0.95 * (s.length - 1))] - s[Math.floor(0.05 * (s.length - 1))]) / 0.9
 }
