@@ -144,10 +144,15 @@ function searchLength(steps: Float64Array, totals: Totals, length: number, highe
     const good = totals.there[from + length] - totals.there[from] > 0.7 * length
     used[j + 1] = used[j] + (good ? 1 : 0)
     if (good) lowSpectrum(steps, from, length, (totals.sum[from + length] - totals.sum[from]) / length, bins)
-    for (let k = 0, at = j * bins; k < bins; k++, at++) {
+    let total = 0
+    for (let k = 1, at = j * bins + 1; k < bins; k++, at++) {
       const re = low[2 * k], im = low[2 * k + 1]
-      sums[at + bins] = sums[at] + (good ? re * re + im * im : 0)
+      const square = good ? re * re + im * im : 0
+      sums[at + bins] = sums[at] + square
+      total += square
     }
+    // Bin 0 is not looked at: all other bins together stand there.
+    sums[(j + 1) * bins] = sums[j * bins] + total
   }
   const power = new Float64Array(bins), logs = new Float64Array(bins + 1), inverse = new Float64Array(bins + 1)
   let limitOf = 0, limit = 0, bound = 0
@@ -156,15 +161,16 @@ function searchLength(steps: Float64Array, totals: Totals, length: number, highe
     for (let from = 0; from + width <= segments; from += stride) {
       const m = used[from + width] - used[from]
       if (m < width / 2) continue
-      let floor = 0
-      for (let k = 1; k < bins; k++) {
-        power[k] = sums[(from + width) * bins + k] - sums[from * bins + k]
-        floor += power[k]
-      }
+      const begin = from * bins, end = begin + width * bins
+      let floor = sums[end] - sums[begin]
       if (!(floor > 0)) continue
       // Rounding of the running sums must not pass for an empty spectrum.
-      floor = Math.max(floor, sums[(from + width) * bins + bins - 1]) * 1e-13
-      for (let k = 1; k < bins; k++) inverse[k + 1] = inverse[k] + 1 / Math.max(power[k], floor)
+      floor = Math.max(floor, sums[end + bins - 1]) * 1e-13
+      for (let k = 1; k < bins; k++) {
+        const p = sums[end + k] - sums[begin + k]
+        power[k] = p
+        inverse[k + 1] = inverse[k] + 1 / (p > floor ? p : floor)
+      }
       if (m !== limitOf) {
         limitOf = m
         limit = LOWEST_RATIO + 3 * Math.log(1 - 1 / (9 * m) + QUANTILE / (3 * Math.sqrt(m))) + 1 / (2 * m) + 1 / (12 * m * m)
