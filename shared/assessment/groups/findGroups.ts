@@ -1,6 +1,6 @@
 import { demodulate } from './demodulate'
 import { lockedHarmonics } from './lockedHarmonics'
-import { phaseCoherence, type Demodulated } from './phaseCoherence'
+import { commonWander, phaseCoherence, type Demodulated } from './phaseCoherence'
 import { rankSources, type SourceRank } from './rankSources'
 
 /** A loop with a detected oscillation, as the search for groups needs it. */
@@ -28,13 +28,16 @@ const PERIOD_TOLERANCE = 0.15
 const GRID = 0.05
 /** Chance of one pair under independence; corrected for the number of pairs that were compared. */
 const FALSE_PAIR = 0.01
+/** Pairs that one accepts to be in step by chance over the whole fleet. */
+const EXPECTED_CHANCE_PAIRS = 0.05
 /** Below this share of common power two loops do not hunt together, however many windows say so. */
 const LEAST_COHERENCE = 0.6
 const PERIODS_PER_WINDOW = 4
 
 /**
  * Groups of loops that hunt together: the same period within its uncertainty, then a steady phase (coherence of
- * complex demodulates), single linkage, then each member checked against the group as a whole.
+ * complex demodulates) that periods agreeing by chance do not explain: they are linked, or there are too few
+ * pairs for that, or both wander together; single linkage, then each member checked against the group as a whole.
  *
  * Cost: only pairs of similar period are compared, and each loop is demodulated at a few periods only.
  *
@@ -55,7 +58,10 @@ export function findGroups(candidates: readonly GroupCandidate[], { fromMs, toMs
   const root = (k: number): number => (parent[k] === k ? k : (parent[k] = root(parent[k])))
   for (const [i, j] of near) {
     const found = waves.compare(i, j)
-    if (found && found.coherence >= LEAST_COHERENCE && found.chance < FALSE_PAIR / near.length) parent[root(i)] = root(j)
+    if (!found || found.coherence < LEAST_COHERENCE || found.chance >= FALSE_PAIR / near.length) continue
+    // periods that agree by chance stay in step for a while: their odds are a turn in all the turns there could have been
+    const byChance = 1 / (2 * PERIOD_TOLERANCE * PERIODS_PER_WINDOW * found.windows)
+    if (linked(loops[i], loops[j]) || byChance * near.length < EXPECTED_CHANCE_PAIRS || found.wander.chance < FALSE_PAIR / near.length) parent[root(i)] = root(j)
   }
   const clusters = new Map<number, number[]>()
   loops.forEach((_, k) => clusters.set(root(k), [...(clusters.get(root(k)) ?? []), k]))
@@ -63,6 +69,9 @@ export function findGroups(candidates: readonly GroupCandidate[], { fromMs, toMs
     .sort((a, b) => b.members.length - a.members.length || a.periodS - b.periodS)
   return found.filter(g => !found.some(larger => isHarmonicOf(g, larger)))
 }
+
+/** A declared link, or a common source, is a reason of its own why two loops should swing together. */
+const linked = (a: GroupCandidate, b: GroupCandidate): boolean => a.upstream.includes(b.tag) || b.upstream.includes(a.tag) || a.upstream.some(tag => b.upstream.includes(tag))
 
 /** The harmonics of a common wave are locked to each other too; they are no group of their own. */
 function isHarmonicOf(g: LoopGroup, larger: LoopGroup): boolean {
@@ -73,7 +82,8 @@ function isHarmonicOf(g: LoopGroup, larger: LoopGroup): boolean {
   return g.members.every(m => tags.has(m.tag))
 }
 
-interface Waves { compare: (i: number, j: number) => ReturnType<typeof phaseCoherence> | null }
+type Comparison = ReturnType<typeof phaseCoherence> & { wander: ReturnType<typeof commonWander> }
+interface Waves { compare: (i: number, j: number) => Comparison | null }
 
 /** Demodulated waves by loop and grid period, made when first asked for. */
 function waveCache(loops: GroupCandidate[], fromMs: number, toMs: number): Waves {
@@ -89,7 +99,8 @@ function waveCache(loops: GroupCandidate[], fromMs: number, toMs: number): Waves
       const grid = Math.round(Math.log(loops[i].periodS * loops[j].periodS) / 2 / GRID)
       const clock = clockOf(Math.exp(grid * GRID), fromMs, toMs)
       if (clock.windows < 4 || [i, j].some(k => clock.periodS < 4 * loops[k].sampleIntervalS)) return null
-      return phaseCoherence(wave(i, grid, clock), wave(j, grid, clock), clock.periodS)
+      const [a, b] = [wave(i, grid, clock), wave(j, grid, clock)]
+      return { ...phaseCoherence(a, b, clock.periodS), wander: commonWander(a, b) }
     },
   }
 }

@@ -2,7 +2,7 @@ import { describe, expect, it } from 'vitest'
 import { demodulate } from '../../../shared/assessment/groups/demodulate'
 import { findGroups, type GroupCandidate } from '../../../shared/assessment/groups/findGroups'
 import { lockedHarmonics } from '../../../shared/assessment/groups/lockedHarmonics'
-import { phaseCoherence } from '../../../shared/assessment/groups/phaseCoherence'
+import { commonWander, phaseCoherence } from '../../../shared/assessment/groups/phaseCoherence'
 import { rankSources } from '../../../shared/assessment/groups/rankSources'
 import { seededRandom } from '../../../shared/assessment/statistics/seededRandom'
 
@@ -90,6 +90,24 @@ describe('lockedHarmonics', () => {
   })
 })
 
+describe('commonWander', () => {
+  const wave = (phase: Float64Array, seed: number) => {
+    const random = seededRandom(seed)
+    return demodulate(Float64Array.from(phase, p => Math.sin(p) + 0.2 * random.normal()), { t0Ms: 0, sampleIntervalS: DT, periodS: 900, originMs: 0, windowS: 3600, windows: 160 })
+  }
+  it('is strong for two loops that follow one wave, and absent for two of their own', () => {
+    const common = wanderingPhase(7, 900, 0.2)
+    expect(commonWander(wave(common, 1), wave(common, 2)).chance).toBeLessThan(1e-4)
+    let alarms = 0
+    for (let run = 0; run < 100; run++) if (commonWander(wave(wanderingPhase(300 + run, 900, 0.2), run + 1), wave(wanderingPhase(600 + run, 900, 0.2), run + 500)).chance < 0.05) alarms++
+    expect(alarms).toBeLessThanOrEqual(12)
+  })
+  it('cannot tell from a few windows', () => {
+    const short = { re: Float64Array.of(1, 1, 1), im: Float64Array.of(0, 0, 0) }
+    expect(commonWander(short, short).chance).toBe(1)
+  })
+})
+
 describe('findGroups', () => {
   it('finds the loops of one wave with their lags, and leaves a loop of another period alone', () => {
     const common = wanderingPhase(1, 1200, 0.2)
@@ -112,6 +130,12 @@ describe('findGroups', () => {
       if (found.length) grouped++
     }
     expect(grouped).toBeLessThan(5)
+  })
+  it('does not group a large fleet of loops whose periods lie close by chance: below 5 % of 300', () => {
+    const random = seededRandom(77)
+    const fleet = Array.from({ length: 300 }, (_, k) => { const periodS = 300 * 20 ** random.uniform(); return loop(`L${k}`, wanderingPhase(5000 + k, periodS, 0.1), 0, periodS, 7000 + k) })
+    const grouped = findGroups(fleet, span).reduce((n, g) => n + g.members.length, 0)
+    expect(grouped).toBeLessThan(15)
   })
   it('does not report the harmonics of a group as a group of its own', () => {
     const common = wanderingPhase(3, 1200, 0.2)
