@@ -73,13 +73,17 @@ function areApart(one: number, other: number, averages: Average[]): boolean {
 /** Running totals: sum and number of the samples before each index. */
 interface Totals { sum: Float64Array, there: Int32Array }
 
+/** Kept for the next call, like all working memory here: fresh memory costs more than the sums. */
+let pooled: Totals = { sum: new Float64Array(1), there: new Int32Array(1) }
+
 function totalsOf(steps: Float64Array, present: Uint8Array): Totals {
-  const sum = new Float64Array(steps.length + 1), there = new Int32Array(steps.length + 1)
+  if (pooled.sum.length <= steps.length) pooled = { sum: new Float64Array(steps.length + 1), there: new Int32Array(steps.length + 1) }
+  const { sum, there } = pooled
   for (let i = 0; i < steps.length; i++) {
     sum[i + 1] = sum[i] + steps[i]
     there[i + 1] = there[i] + present[i]
   }
-  return { sum, there }
+  return pooled
 }
 
 /** What one segment length needs, kept: Hann window in the order of the pieces, and their turns exp(-2 pi i k q / length). */
@@ -125,7 +129,7 @@ function lowSpectrum(steps: Float64Array, from: number, length: number, mean: nu
   }
 }
 
-/** Working memory of searchLength, kept: fresh memory costs more than the sums. */
+/** Running sums of searchLength. */
 let pool = new Float64Array(0)
 
 function searchLength(steps: Float64Array, totals: Totals, length: number, highestPeriod: number, found: SpectralPeak[]): Average {
