@@ -79,6 +79,18 @@ describe('PATCH /api/loops/:tag', () => {
   })
 })
 
+describe('a change that nobody recorded', () => {
+  const list = (text: string) => engineer('POST', '/api/loops/import', text, { 'content-type': 'text/csv' })
+  it('is flagged when a loop list brings another tuning or range, and stands in the tuning record', async () => {
+    const { body } = await list(`tag,gain,pvHigh\n${TAG},3,1200`)
+    expect(body.unrecorded).toEqual([{ tag: TAG, what: 'tuning' }, { tag: TAG, what: 'range' }])
+    expect((await page()).tuning.slice(0, 2).map((t: { kind: string }) => t.kind)).toEqual(['unrecorded', 'unrecorded'])
+  })
+  it('is not, when the list brings nothing new or words only', async () => {
+    expect((await list(`tag,gain,description\n${TAG},3,tile kiln zone`)).body.unrecorded).toEqual([])
+  })
+})
+
 describe('set aside, shelved, concerns', () => {
   const later = new Date(Date.now() + 86_400_000).toISOString()
   it('a loop set aside leaves the ranking with its reason, and comes back', async () => {

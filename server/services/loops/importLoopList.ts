@@ -4,7 +4,7 @@ import { ensureAreas } from '../../../db/repositories/areas'
 import { insertAudit } from '../../../db/repositories/audit'
 import { insertLoops, listLoops, updateLoop, type LoopConfig, type LoopRow } from '../../../db/repositories/loops'
 import { listLoopWeekKeys } from '../../../db/repositories/loopWeekWrites'
-import { insertTuningRecord } from '../../../db/repositories/tuningRecords'
+import { insertTuningRecord, listTuningRecords } from '../../../db/repositories/tuningRecords'
 import { requestAssessments } from '../assessments/requestAssessments'
 import { typeOfTag } from '../imports/guessLoop'
 import { normaliseMode } from '../imports/scan/cells'
@@ -21,10 +21,13 @@ export interface LoopListAnswer {
   unknownColumns: string[]
   errors: RowProblem[]
   changes: { tag: string, created: boolean, fields: Record<string, { from: unknown, to: unknown }> }[]
+  /** loops whose tuning or range came in changed although nobody had recorded a change here */
+  unrecorded: { tag: string, what: 'tuning' | 'range' }[]
 }
 
 const UNASSESSED: ReadonlySet<string> = new Set(['description', 'unit', 'pvUnit', 'upstream'])
 const TUNING = ['form', 'action', 'gain', 'gainUnit', 'integralTime', 'derivativeTime', 'timeUnit', 'filterTimeS', 'setpointWeight', 'hysteresis'] as const
+const RANGE = ['pvLow', 'pvHigh', 'opLow', 'opHigh'] as const
 const MOST_CHANGES = 2000
 
 type Cell = { text: string, number: () => number }
@@ -88,7 +91,7 @@ export async function importLoopList(db: Knex, bytes: Uint8Array, by: { userId: 
   return await db.transaction(async (trx) => {
     const known = new Map((await listLoops(trx)).map(l => [l.tag.toUpperCase(), l]))
     const areas = await ensureAreas(trx, rows.flatMap(r => r.area ? [r.area] : []))
-    const answer: LoopListAnswer = { rows: total, created: 0, changed: 0, unchanged: 0, reassessed: 0, unknownColumns, errors, changes: [] }
+    const answer: LoopListAnswer = { rows: total, created: 0, changed: 0, unchanged: 0, reassessed: 0, unknownColumns, errors, changes: [], unrecorded: [] }
     const fresh: ({ tag: string } & Partial<LoopConfig>)[] = []
     const assess: number[] = []
     for (const { line, tag, area, config } of rows) {
@@ -112,7 +115,16 @@ export async function importLoopList(db: Knex, bytes: Uint8Array, by: { userId: 
       }
       const change = Object.fromEntries(changed.map(key => [key, config[key]])) as Partial<LoopConfig>
       await updateLoop(trx, loop.id, change)
-      if (TUNING.some(key => changed.includes(key))) await keepTuning(trx, loop.id, { ...loop, ...change }, by)
+      const retuned = TUNING.some(key => changed.includes(key))
+      // what was never said before is a first statement, not a change
+      const unrecordedTuning = retuned && loop.gain !== null && !await wasRecorded(trx, loop.id)
+      if (retuned) await keepTuning(trx, loop.id, { ...loop, ...change }, by, unrecordedTuning)
+      if (unrecordedTuning) answer.unrecorded.push({ tag: loop.tag, what: 'tuning' })
+      const ranged = RANGE.filter(key => changed.includes(key) && loop[key] !== null)
+      if (ranged.length && !loop.rangeGuessed) {
+        answer.unrecorded.push({ tag: loop.tag, what: 'range' })
+        await insertTuningRecord(trx, { loopId: loop.id, ticketId: null, userId: by.userId, actor: by.name, kind: 'unrecorded', tuning: Object.fromEntries(ranged.map(key => [key, change[key] as number])), reason: `The range came in changed by a loop list (before: ${ranged.map(key => `${key} ${loop[key]}`).join(', ')}); figures in per cent of span change with it.`, changeNumber: null })
+      }
       if (changed.some(key => !UNASSESSED.has(key))) assess.push(loop.id)
       answer.changed++
       const shown = Object.fromEntries(changed.map(key => key === 'areaId' ? ['area', { from: loop.area, to: area }] : [key, { from: loop[key], to: config[key] }]))
@@ -127,9 +139,19 @@ export async function importLoopList(db: Knex, bytes: Uint8Array, by: { userId: 
   })
 }
 
-async function keepTuning(trx: Knex.Transaction, loopId: number, source: Partial<LoopConfig>, by: { userId: number | null, name: string }): Promise<void> {
+async function keepTuning(trx: Knex.Transaction, loopId: number, source: Partial<LoopConfig>, by: { userId: number | null, name: string }, unrecorded = false): Promise<void> {
   const tuning = Object.fromEntries(TUNING.flatMap(key => source[key] === undefined ? [] : [[key, source[key] as string | number | null]]))
-  await insertTuningRecord(trx, { loopId, ticketId: null, userId: by.userId, actor: by.name, kind: 'imported', tuning, reason: 'Loop list imported.', changeNumber: null })
+  await insertTuningRecord(trx, { loopId, ticketId: null, userId: by.userId, actor: by.name, kind: unrecorded ? 'unrecorded' : 'imported', tuning, reason: unrecorded ? 'The tuning came in changed by a loop list; nobody had recorded a change.' : 'Loop list imported.', changeNumber: null })
+}
+
+/** Whether somebody recorded a tuning as left since the set-up was last stated by a list. */
+async function wasRecorded(trx: Knex.Transaction, loopId: number): Promise<boolean> {
+  // newest first
+  for (const record of await listTuningRecords(trx, loopId)) {
+    if (record.kind === 'asLeft') return true
+    if (record.kind === 'imported' || record.kind === 'unrecorded') return false
+  }
+  return false
 }
 
 function clash(config: Partial<LoopConfig>, loop: LoopRow | undefined): Omit<RowProblem, 'line' | 'tag'> | null {
