@@ -19,13 +19,14 @@ if [ -n "$rscript" ] && ! "$rscript" -e 'library(jsonlite)' >/dev/null 2>&1; the
 fi
 
 if [ -n "$python" ]; then
-  for script in harris bicoherence compression bootstrap library-values; do echo "== $script.py"; "$python" "scripts/$script.py"; done
+  for script in harris bicoherence compression bootstrap library-values idle onOff oscillation stiction tuning twoDegreeOfFreedom; do echo "== $script.py"; "$python" "scripts/$script.py"; done
   if [ -n "${GSL_SOURCE:-}" ]; then echo "== nist.py"; "$python" scripts/nist.py; fi
 else
   echo "no python3 with numpy and scipy"
 fi
 if [ -n "$rscript" ]; then
   echo "== r-correlation.R"; "$rscript" scripts/r-correlation.R
+  echo "== tuning.margins.R (a check: it prints the largest differences)"; "$rscript" scripts/tuning.margins.R
   echo "== autoregression.R"; "$rscript" scripts/autoregression.R
   if [ -n "$python" ]; then
     echo "== autoregression.py"; "$python" scripts/autoregression.py

@@ -24,7 +24,7 @@ function resonance(damping: number, period: number) {
   return autoregressive(2 * r * Math.cos(w * Math.sqrt(1 - damping * damping)), r * r)
 }
 
-describe('what is there is found: reference signals of fixtures/reference/oscillation.py', () => {
+describe('what is there is found: reference signals of fixtures/reference/scripts/oscillation.py', () => {
   for (const name of ['sine60_noise', 'sine60_clean', 'square60', 'triangle60']) {
     it(`${name}: one oscillation of 60 samples`, () => {
       const found = detect(referenceSignal(`osc_${name}`).e!)

@@ -21,7 +21,7 @@ const close = (value: number, expected: number, relative = 1e-6) =>
 
 const names = ['sine60_noise', 'sine60_clean', 'damped_sine', 'white', 'ar2_zeta0.1', 'square60', 'two_sines', 'triangle60', 'ar1_0.9']
 
-describe('oscillation measures against independent NumPy and R computations (fixtures/reference/oscillation.py)', () => {
+describe('oscillation measures against independent NumPy and R computations (fixtures/reference/scripts/oscillation.py)', () => {
   for (const name of names) {
     it(name, () => {
       const { e } = referenceSignal(`osc_${name}`)

@@ -16,7 +16,7 @@ const told = <T>(result: T | { status: 'insufficient', reason: string }): T => {
 }
 const records = ['sluggish', 'simc', 'aggressive'] as const
 
-describe('idle index (Hägglund 1999) and area index (Visioli 2005) as NumPy and R (fixtures/reference/idle.py)', () => {
+describe('idle index (Hägglund 1999) and area index (Visioli 2005) as NumPy and R (fixtures/reference/scripts/idle.py)', () => {
   for (const name of records) {
     it(name, () => {
       const { op, pv } = referenceSignal(`idle_${name}`)

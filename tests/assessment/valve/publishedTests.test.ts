@@ -22,7 +22,7 @@ describe('cross-correlation test (Horch 1999)', () => {
   }
   const verdicts: Record<string, string> = { 'stiction': 'sticking', 'no stiction': 'sound', 'undetermined': 'undecided' }
   for (const [name, [op, pv]] of Object.entries(cases)) {
-    it(`${name} as NumPy and R (fixtures/reference/stiction.py)`, () => {
+    it(`${name} as NumPy and R (fixtures/reference/scripts/stiction.py)`, () => {
       const { expected } = referenceCase('stiction', `horch_${name}`)
       const result = told(crossCorrelationTest(op, pv, 99))
       expect(result.lagAsymmetry).toBeCloseTo(expected.d_tau, 6)
@@ -57,7 +57,7 @@ describe('cross-correlation test (Horch 1999)', () => {
 
 describe('shape of half-cycles (He and others 2007) and peak asymmetry (Singhal, Salsbury 2005)', () => {
   for (const name of ['sine', 'triangle', 'exp_relay', 'sine_noise', 'triangle_noise']) {
-    it(`${name} as NumPy and R (fixtures/reference/stiction.py)`, () => {
+    it(`${name} as NumPy and R (fixtures/reference/scripts/stiction.py)`, () => {
       const { e } = referenceSignal(`shape_${name}`)
       const { expected } = referenceCase('stiction', `shape_${name}`)
       const shape = told(halfCycleShape(e!)), asymmetry = told(peakAsymmetry(e!))
@@ -95,7 +95,7 @@ describe('shape of half-cycles (He and others 2007) and peak asymmetry (Singhal,
 describe('stick-slip patterns (Yamashita 2006)', () => {
   const { op, mv } = referenceSignal('yamashita_kano')
   const { expected } = referenceCase('stiction', 'yamashita')
-  it('sticking stem as NumPy, at one standard deviation and at thirds (fixtures/reference/stiction.py)', () => {
+  it('sticking stem as NumPy, at one standard deviation and at thirds (fixtures/reference/scripts/stiction.py)', () => {
     for (const [threshold, reference] of [[1, expected.stiction_S5_J2], [0.4307, expected.stiction_thr0p4307]] as const) {
       const result = told(stickSlipPatterns(op!, mv!, threshold))
       expect(result.index1).toBeCloseTo(reference.rho1, 9)

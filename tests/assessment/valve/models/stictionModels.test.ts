@@ -8,7 +8,7 @@ import { referenceSignal } from '../referenceSignals'
 const models = { kano: createKanoStiction, choudhury: createChoudhuryStiction, he: createHeStiction }
 const bands = [[3, 1], [5, 2], [4, 4], [4, 0], [2, 3]] as const
 
-describe('stiction models against independent NumPy and R transcriptions (fixtures/reference/stiction.py)', () => {
+describe('stiction models against independent NumPy and R transcriptions (fixtures/reference/scripts/stiction.py)', () => {
   for (const input of ['tri', 'sin', 'hold', 'sinnoise']) {
     for (const [S, J] of bands) {
       const signal = referenceSignal(`stiction_${input}_S${S}_J${J}`)
