@@ -1,6 +1,6 @@
 import { formatChange, formatConfidence, formatCount, formatFull, formatNumber, formatPercent } from '../shared/format/number'
 import { formatDuration } from '../shared/format/duration'
-import { TYPE_WORDS, VERDICT_WORDS } from '../shared/format/words'
+import { TYPE_WORDS, verdictWords } from '../shared/format/words'
 import { STATE_WORDS } from '../shared/types/tickets'
 import type { LoopRow } from '../shared/types/fleet'
 import { STATES } from '../shared/ribbon/states'
@@ -36,7 +36,7 @@ export const FLEET_COLUMNS: readonly FleetColumn[] = [
   number('lostHours', 'Lost', 'h', 'Hours in manual, at a limit, hunting, off target or with a doubtful sensor', formatCount, 60),
   number('weightedLostHours', 'Weighted', 'h', 'Lost hours times 3, 2 or 1 by the priority of the loop', formatCount, 94),
   number('change', 'Change', 'h', 'Weighted lost hours against the week before', formatChange, 80),
-  { key: 'verdict', head: 'Verdict', about: 'The likely cause and how sure it is', width: 232, kind: 'words', text: row => VERDICT_WORDS[row.verdict], full: row => row.reason ?? (row.confidence === null ? '' : `${formatConfidence(row.confidence)} sure`) },
+  { key: 'verdict', head: 'Verdict', about: 'The likely cause and how sure it is', width: 232, kind: 'words', text: row => verdictWords(row.verdict, row.form), full: row => row.reason ?? (row.confidence === null ? '' : `${formatConfidence(row.confidence)} sure`) },
   { ...number('oscillationPeriod', 'Period', '', 'Period of the strongest oscillation', formatDuration, 70), full: row => (row.oscillationPeriod === null ? 'no oscillation found' : `${formatFull(row.oscillationPeriod)} s`) },
   percent('saturationFraction', 'At limit', 'Share of the time with the output at a limit', 82),
   { key: 'varianceRatio', head: 'Variance ratio', about: 'Minimum variance / variance with its 95 % interval: 1 cannot be controlled better', width: 112, kind: 'interval', text: row => formatNumber(row.varianceRatio), full: row => (row.varianceRatio === null ? 'cannot be told from this record' : `${formatNumber(row.varianceRatio)}, 95 % interval ${formatNumber(row.varianceRatioLow)} to ${formatNumber(row.varianceRatioHigh)}`) },

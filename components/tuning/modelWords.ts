@@ -16,5 +16,7 @@ export function parameterText(fit: FitView, name: ParameterName): string {
   const p = fit.parameters[name]
   if (!p) return '–'
   const write = name === 'processGain' ? (v: number) => formatNumber(v) : (v: number) => formatDuration(v)
+  // an interval over more than two decades says only that the data do not know it
+  if ((p.low > 0) !== (p.high > 0) || Math.abs(p.high) > 100 * Math.abs(p.low) || Math.abs(p.low) > 100 * Math.abs(p.high)) return `${write(p.value)} (not told by the data)`
   return `${write(p.value)} (${write(p.low)} to ${write(p.high)})`
 }

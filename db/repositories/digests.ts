@@ -9,12 +9,12 @@ export async function listDigestLoops(db: Database, week: string, weekBefore: st
     .where('w.week', week)
     .whereNotExists(db('set_asides as s').whereRaw('s.loop_id = l.id').whereNull('s.ended_at').whereRaw('s.until_at > now()'))
     .whereNotExists(db('shelvings as s').whereRaw('s.loop_id = l.id').whereNull('s.ended_at').whereRaw('s.until_at > now()'))
-    .select('l.tag', 'l.description', 'a.name as area', 'w.ribbon', 'w.lost_hours', 'w.verdict', 'w.confidence', 'w.hours', 'p.lost_hours as lost_before', 'p.verdict as verdict_before')
+    .select('l.tag', 'l.description', 'l.form', 'a.name as area', 'w.ribbon', 'w.lost_hours', 'w.verdict', 'w.confidence', 'w.hours', 'p.lost_hours as lost_before', 'p.verdict as verdict_before')
     .orderBy([{ column: 'w.weighted_lost_hours', order: 'desc' }, { column: 'l.tag' }])
   if (areaIds.length) query.whereIn('l.area_id', areaIds)
   const rows = await query
   return rows.map(r => ({
-    tag: r.tag, description: r.description, area: r.area ?? '', ribbon: r.ribbon, lostHours: r.lost_hours, verdict: r.verdict, confidence: r.confidence, hours: r.hours,
+    tag: r.tag, description: r.description, form: r.form, area: r.area ?? '', ribbon: r.ribbon, lostHours: r.lost_hours, verdict: r.verdict, confidence: r.confidence, hours: r.hours,
     lostBefore: r.lost_before, verdictBefore: r.verdict_before, change: r.lost_before === null ? null : r.lost_hours - r.lost_before,
   }))
 }

@@ -8,7 +8,7 @@ const column = (measure: string) => `w."${snake(measure)}"`
 
 /** What each key of a row is in SQL. The keys are checked before they get here; this list is what keeps SQL out of them. */
 const expressions: Record<string, string> = {
-  tag: 'l.tag', description: 'l.description', area: `coalesce(a.name, '')`, unit: 'l.unit', type: 'l.type', priority: 'l.priority', pvUnit: 'l.pv_unit',
+  tag: 'l.tag', description: 'l.description', area: `coalesce(a.name, '')`, unit: 'l.unit', type: 'l.type', priority: 'l.priority', pvUnit: 'l.pv_unit', form: 'l.form',
   verdict: 'w.verdict', confidence: 'w.confidence', lostHours: 'w.lost_hours', weightedLostHours: 'w.weighted_lost_hours',
   change: 'w.weighted_lost_hours - before.weighted_lost_hours', hours: 'w.hours', ribbon: 'w.ribbon', group: 'g.letter', openTicket: 't.id', openTicketState: 't.state',
   setAside: `case when s.until_at is not null then jsonb_build_object('until', s.until_at, 'reason', s.reason) end`,

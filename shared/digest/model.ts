@@ -1,7 +1,7 @@
 import type { Verdict } from '../assessment/types'
 import type { Outcome, TicketState } from '../types/tickets'
 
-export interface DigestLoop { tag: string, description: string, area: string, ribbon: string, lostHours: number, change: number | null, verdict: Verdict, confidence: number | null }
+export interface DigestLoop { tag: string, description: string, area: string, ribbon: string, lostHours: number, change: number | null, verdict: Verdict, form: string, confidence: number | null }
 export interface DigestTicket { id: number, title: string, state: TicketState, dueOn: string | null, assignee: string | null, overdue: boolean }
 export interface DigestWin { ticketId: number, title: string, hoursPerWeek: number, provisional: boolean, outcome: Outcome | null }
 export interface DigestSlideBack { ticketId: number, followUpId: number, title: string }

@@ -1,7 +1,7 @@
 import { RIBBON_LETTERS } from '../assessment/types'
 import { formatDuration } from '../format/duration'
 import { formatDate, formatWeek } from '../format/date'
-import { VERDICT_WORDS } from '../format/words'
+import { verdictWords } from '../format/words'
 import { coarseCells } from '../ribbon/coarseCells'
 import { STATE_COLOURS } from '../ribbon/colours'
 import { OUTCOME_WORDS, STATE_WORDS } from '../types/tickets'
@@ -45,7 +45,7 @@ const stateWords: Record<string, string> = { manual: 'manual mode', saturated: '
 
 function loopTextLine(l: DigestLoop): string {
   const sure = l.confidence === null ? '' : ` (${Math.round(l.confidence * 100)} % sure)`
-  return `  ${l.tag}  ${l.lostHours} h lost${l.change === null ? '' : ` (${signed(l.change)})`}  ${VERDICT_WORDS[l.verdict]}${sure}\n    ${[l.description, l.area].filter(Boolean).join(', ')}\n    ${coarseLetters(l.ribbon)}`
+  return `  ${l.tag}  ${l.lostHours} h lost${l.change === null ? '' : ` (${signed(l.change)})`}  ${verdictWords(l.verdict, l.form)}${sure}\n    ${[l.description, l.area].filter(Boolean).join(', ')}\n    ${coarseLetters(l.ribbon)}`
 }
 
 // Programs that know dark mode get colours of ours; all others keep the light ones, or turn both sides of a pair.
@@ -78,7 +78,8 @@ export function renderDigest(m: DigestModel, unsubscribeUrl: string): RenderedDi
   ].join('\n')
 
   const heading = (words: string) => `<h2 style="font:600 14px/20px Arial,sans-serif;color:${QUIET};margin:22px 0 6px">${words}</h2>`
-  const loopRow = (l: DigestLoop) => `<tr><td class="l" style="padding:6px 10px 6px 0;border-top:1px solid #DAD8D2;vertical-align:top"><a class="a" href="${escape(url(`/loops/${encodeURIComponent(l.tag)}?week=${m.week}`))}" style="color:#0F5C63;font-weight:bold;text-decoration:none;white-space:nowrap">${escape(l.tag)}</a><br><span class="q" style="color:${QUIET};font-size:12px">${escape(l.description)}</span></td><td class="l" style="padding:8px 10px 6px 0;border-top:1px solid #DAD8D2;vertical-align:top">${ribbonCells(l.ribbon)}<span class="q" style="font-size:12px;color:${QUIET}">${escape(VERDICT_WORDS[l.verdict])}${l.confidence === null ? '' : `, ${Math.round(l.confidence * 100)} % sure`}</span></td><td class="l" align="right" style="padding:6px 0;border-top:1px solid #DAD8D2;vertical-align:top;white-space:nowrap"><b>${l.lostHours} h</b><br><span class="q" style="color:${QUIET};font-size:12px">${l.change === null ? '' : signed(l.change)}</span></td></tr>`
+  // tag and hours share a line, the ribbon has one of its own: both fit a phone
+  const loopRow = (l: DigestLoop) => `<tr><td class="l" style="padding:8px 10px 2px 0;border-top:1px solid #DAD8D2;vertical-align:top"><a class="a" href="${escape(url(`/loops/${encodeURIComponent(l.tag)}?week=${m.week}`))}" style="color:#0F5C63;font-weight:bold;text-decoration:none;white-space:nowrap">${escape(l.tag)}</a> <span class="q" style="color:${QUIET};font-size:12px">${escape(l.description)}</span></td><td class="l" align="right" style="padding:8px 0 2px;border-top:1px solid #DAD8D2;vertical-align:top;white-space:nowrap"><b>${l.lostHours} h</b> <span class="q" style="color:${QUIET};font-size:12px">${l.change === null ? '' : signed(l.change)}</span></td></tr><tr><td colspan="2" style="padding:0 0 8px">${ribbonCells(l.ribbon)}<span class="q" style="font-size:12px;color:${QUIET}">${escape(verdictWords(l.verdict, l.form))}${l.confidence === null ? '' : `, ${Math.round(l.confidence * 100)} % sure`}</span></td></tr>`
   const table = (loops: DigestLoop[]) => `<table role="presentation" width="100%" cellpadding="0" cellspacing="0" style="border-collapse:collapse">${loops.map(loopRow).join('')}</table>`
   const list = (lines: string[]) => lines.map(line => `<p style="margin:0 0 6px">${escape(line)}</p>`).join('')
   const ticketList = (lines: { id: number, line: string }[]) => lines.map(({ id, line }) => `<p style="margin:0 0 6px"><a class="a" href="${escape(url(`/tickets/${id}`))}" style="color:#0F5C63;font-weight:bold;text-decoration:none">T-${id}</a> ${escape(line.slice(`T-${id} `.length))}</p>`).join('')

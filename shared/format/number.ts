@@ -18,6 +18,9 @@ function grouped(digits: string): string {
 
 const signed = (value: number, digits: string): string => `${value < 0 && /[1-9]/.test(digits) ? MINUS : ''}${digits}`
 
+const SUPERSCRIPTS = '⁰¹²³⁴⁵⁶⁷⁸⁹'
+const raised = (exponent: number): string => (exponent < 0 ? '⁻' : '') + [...String(Math.abs(exponent))].map(digit => SUPERSCRIPTS[Number(digit)]).join('')
+
 /** Three significant digits (or as many as asked); a dash for null and NaN. `12 300`, `0.0457`, `−2.10`. */
 export function formatNumber(value: number | null | undefined, significant = 3): string {
   if (isMissing(value)) return NOTHING
@@ -25,7 +28,7 @@ export function formatNumber(value: number | null | undefined, significant = 3):
   const size = Math.abs(value)
   if (size < 1e-4 || size >= 1e7) {
     const [mantissa, exponent] = size.toExponential(significant - 1).split('e')
-    return signed(value, `${mantissa} × 10^${Number(exponent) < 0 ? MINUS : ''}${Math.abs(Number(exponent))}`)
+    return signed(value, `${mantissa} × 10${raised(Number(exponent))}`)
   }
   const rounded = Number(size.toPrecision(significant))
   // decimals counted after rounding: 9.996 becomes 10.0, not 10.00

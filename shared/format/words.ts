@@ -28,6 +28,9 @@ export const VERDICT_WORDS: Readonly<Record<Verdict, string>> = {
   cannotTell: 'cannot tell',
 }
 
+/** The verdict as a table says it; an on-off loop has no tuning that could be too tight, but a band. */
+export const verdictWords = (verdict: Verdict, form?: string): string => (form === 'onOff' && verdict === 'huntingTuning' ? 'hunting: on-off cycle too wide' : VERDICT_WORDS[verdict])
+
 export const TYPE_WORDS: Readonly<Record<LoopType, string>> = {
   flow: 'flow', pressure: 'pressure', level: 'level', temperature: 'temperature', analysis: 'analysis', other: 'other',
 }

@@ -1,3 +1,4 @@
+import type { ControllerForm } from '../control/types'
 import type { LedgerState, LoopType, Verdict } from '../assessment/types'
 import type { TicketState } from './tickets'
 
@@ -23,6 +24,7 @@ export interface LoopRow extends Record<FleetMeasure, number | null> {
   type: LoopType
   priority: 1 | 2 | 3
   pvUnit: string
+  form: ControllerForm
   verdict: Verdict
   confidence: number | null
   /** of `cannotTell`: why */

@@ -1,11 +1,13 @@
 import type { EvidenceItem, LoopWeekAssessment, SetpointResponse } from '../assessment/types'
 import type { LoopChange } from '../schemas/loops'
-import type { LoopRow } from './fleet'
+import type { FleetGroup, LoopRow } from './fleet'
 import type { Outcome, TicketState } from './tickets'
 
 type ByType = Record<'flow' | 'pressure' | 'level' | 'temperature' | 'analysis' | 'other', number>
 /** Times are ISO 8601 as they arrive in JSON. */
 export interface LoopPage extends Partial<LoopRow> {
+  /** the group it hunts with, whole */
+  groupOf: FleetGroup | null
   tag: string
   week: string | null
   zone: string

@@ -27,7 +27,7 @@ describe('digestDueAt', () => {
 const model: DigestModel = {
   siteName: 'Tarn Hollow Tileworks', week: '2026-W48', zone: 'Europe/London', areas: [], loops: 238, lostHours: 531, change: -47,
   byState: [{ state: 'hunting', hours: 212 }, { state: 'manual', hours: 118 }],
-  worst: [{ tag: 'FIC-2107', description: 'Mill <feed> water', area: 'Glaze preparation', ribbon: 'h'.repeat(168), lostHours: 63, change: 15, verdict: 'huntingValve', confidence: 0.86 }],
+  worst: [{ tag: 'FIC-2107', description: 'Mill <feed> water', area: 'Glaze preparation', ribbon: 'h'.repeat(168), lostHours: 63, change: 15, form: 'ideal', verdict: 'huntingValve', confidence: 0.86 }],
   better: [], groups: [{ letter: 'A', periodS: 2280, members: 9, source: 'FIC-2107' }],
   tickets: [{ id: 12, title: 'PIC-4002 runs against its limit', state: 'inWork', dueOn: '2026-11-27', assignee: 'T. Technician', overdue: true }],
   wins: [{ ticketId: 7, title: 'TIC-1204 hunts', hoursPerWeek: 41.4, provisional: true, outcome: 'retuned' }],

@@ -8,8 +8,8 @@ describe('formatNumber', () => {
     expect(formatNumber(value)).toBe(text)
   })
   it('goes to powers of ten where zeros would have to be counted', () => {
-    expect(formatNumber(2.5e-7)).toBe(`2.50 × 10^${minus}7`)
-    expect(formatNumber(-1.234e9)).toBe(`${minus}1.23 × 10^9`)
+    expect(formatNumber(2.5e-7)).toBe('2.50 × 10⁻⁷')
+    expect(formatNumber(-1.234e9)).toBe(`${minus}1.23 × 10⁹`)
   })
   it('writes a dash for what cannot be told', () => {
     for (const nothing of [null, undefined, NaN, Infinity]) expect(formatNumber(nothing)).toBe(dash)

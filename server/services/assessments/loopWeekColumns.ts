@@ -14,7 +14,8 @@ export function loopWeekColumns(a: LoopWeekAssessment, { priority, version, week
   return {
     week_start: new Date(weekStartMs).toISOString(), method_version: a.methodVersion || METHOD_VERSION, loop_version: version,
     ribbon: a.ribbon, hours: JSON.stringify(a.hours), lost_hours: a.lostHours, weighted_lost_hours: a.lostHours * WEIGHT[priority],
-    verdict: a.verdict, confidence: finite(a.confidence),
+    // how sure one is that one cannot tell is no figure
+    verdict: a.verdict, confidence: a.verdict === 'cannotTell' ? null : finite(a.confidence),
     ...Object.fromEntries(MEASURES.map(key => [snake(key), finite(a.measures[key])])),
   }
 }

@@ -1,6 +1,7 @@
 import { randomBytes } from 'node:crypto'
 import type { Knex } from 'knex'
 import { saveSubscription } from '../../../db/repositories/digests'
+import { listGroups } from '../../../db/repositories/groups'
 import { listTickets } from '../../../db/repositories/tickets'
 import { findUserByEmail } from '../../../db/repositories/users'
 import { nextWeek, weekOf } from '../../../shared/assessment/week/isoWeek'
@@ -46,7 +47,8 @@ export async function seedTickets(db: Knex, { startMs, zone, now }: { startMs: n
   await move(retuned, engineer, 'inWork', { at: onDay(10.4) })
   await move(retuned, engineer, 'toVerify', { at: onDay(10.6), workDoneAt: onDay(10.6) })
 
-  const source = await openTicket(db, engineer, { tags: ['FIC-312', 'PIC-331', 'PIC-313', 'PIC-323', 'TIC-336', 'AIC-315', 'FIC-335'], week: third, priority: 1, assigneeId: technician.userId, dueOn: due(2), title: 'FIC-312 feed water valve sticks, six loops hunt with it' })
+  const group = (await listGroups(db, third)).find(g => g.likelySource === 'FIC-312')
+  const source = await openTicket(db, engineer, { groupId: group?.id ?? null, tags: ['FIC-312', 'PIC-331', 'PIC-313', 'PIC-323', 'TIC-336', 'AIC-315', 'FIC-335'], week: third, priority: 1, assigneeId: technician.userId, dueOn: due(2), title: 'FIC-312 feed water valve sticks, six loops hunt with it' })
   await move(source, technician, 'inWork')
   await openTicket(db, engineer, { tags: ['TIC-1305'], week: third, assigneeId: technician.userId, dueOn: due(-2), note: 'Why is it in manual? Ask the shift before putting it back.' })
   await openTicket(db, engineer, { tags: ['TIC-2101'], week: third, dueOn: due(10) })

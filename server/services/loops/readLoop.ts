@@ -1,7 +1,7 @@
 import type { Database } from '../../../db/knex'
 import { findBlockSpan } from '../../../db/repositories/trendBlocks'
 import { findLoop } from '../../../db/repositories/loops'
-import { listLoopWeeks } from '../../../db/repositories/loopWeeks'
+import { listFleetGroups, listLoopWeeks } from '../../../db/repositories/loopWeeks'
 import { findLoopWeek, findShelving, listConcerns, listEarlierAssessments, listSetAsides, listWeeksOfLoop } from '../../../db/repositories/loopPage'
 import { listTickets } from '../../../db/repositories/tickets'
 import { listTuningRecords } from '../../../db/repositories/tuningRecords'
@@ -16,16 +16,17 @@ export async function readLoop(db: Database, tag: string, asked: string | undefi
   if (!loop) throw new Refusal(404, 'not_found', `There is no loop named ${tag}.`)
   const [settings, weeks] = await Promise.all([getSettings(db), listWeeksOfLoop(db, loop.id)])
   const week = asked ?? weeks[weeks.length - 1]?.week ?? null
-  const [assessed, ranked, tuning, tickets, setAsides, shelving, concerns, earlier, span] = await Promise.all([
+  const [assessed, ranked, groups, tuning, tickets, setAsides, shelving, concerns, earlier, span] = await Promise.all([
     week ? findLoopWeek(db, loop.id, week) : null,
     week ? listLoopWeeks(db, { ...fleetQuerySchema.parse({ search: tag }), week, weekBefore: previousWeek(week), now }) : null,
+    week ? listFleetGroups(db, week) : [],
     listTuningRecords(db, loop.id), listTickets(db, { loopTag: tag }), listSetAsides(db, loop.id), findShelving(db, loop.id, now),
     listConcerns(db, loop.id), listEarlierAssessments(db, loop.id), findBlockSpan(db, loop.id),
   ])
   const frame = week ? weekFrame(week, settings.zone) : null
   const row = ranked?.rows.find(r => r.tag === tag) ?? null
   return {
-    ...row, tag, week, zone: settings.zone,
+    ...row, tag, week, groupOf: groups.find(g => g.letter === row?.group) ?? null, zone: settings.zone,
     weekFrom: frame ? frame.hourEdges[0] : null, weekTo: frame ? frame.hourEdges[frame.hourEdges.length - 1] : null,
     configuration: loop, settings: { toleranceByType: settings.toleranceByType, settlingByType: settings.settlingByType },
     assessment: assessed?.detail ?? null,
