@@ -29,11 +29,13 @@ import { judge } from './verdict/judge'
 import { readingCharacter } from './verdict/readingCharacter'
 import { recoveries } from './verdict/recoveries'
 import { slipEvents } from './verdict/slipEvents'
+import { standsAndJumps, type StandsAndJumps } from './verdict/standsAndJumps'
+import { stickRuns, type StickRuns } from './verdict/stickRuns'
 import { stickFit } from './verdict/stickFit'
 import { valvePanel } from './verdict/valvePanel'
 
 /** Changes whenever a figure could come out differently; stands beside every stored assessment. */
-export const METHOD_VERSION = '2026.1'
+export const METHOD_VERSION = '2026.2'
 
 export interface AssessOptions {
   /** receives what the likelihood tables look at; for calibration */
@@ -43,6 +45,8 @@ export interface AssessOptions {
 /** Below this the record holds too little to look for patterns. */
 const LEAST_SAMPLES = 64
 const LEAST_SETTLINGS = 8
+/** Up to so many samples a record is short: single strokes of the valve are looked at, since there may be no rhythm to find. */
+const SHORT_SAMPLES = 1500
 /** The stretch on which shape and valve are judged. */
 const MOST_CYCLES = 90
 const MOST_SAMPLES = 4000
@@ -103,6 +107,7 @@ export function assessLoopWeek(record: LoopRecord, setup: LoopSetup, week: WeekF
   const processSign = home && stretch && u ? controllerSign(home.error.subarray(stretch.begin, stretch.end), u, declared) : declared
   const stick = y && u && character && !panelSilent ? stickFit(y, u, processSign, (3 * (pattern?.periodS ?? 2 * character.staySideS)) / home!.intervalS) : null
   const slip = y && u && home && stretch && !panelSilent ? slipEvents(y, home.pv.subarray(stretch.begin, stretch.end), u, processSign, noise / Math.sqrt(home.factor)) : null
+  const stands = u && home && !panelSilent && prepared.n <= SHORT_SAMPLES ? standsIn(home, longestSegment(home)!, setup, processSign, noise / Math.sqrt(home.factor), step.step) : null
   const panel = valvePanel(y, u, period, setup.type, opSpan, stick, slip, panelSilent)
   const shape = y && period !== null && period >= 4 && y.length >= 6 * period ? cycleShape(y, u, period) : null
   const halves = enough && character && character.deviation > 0 ? halfCycles(series, 0.7 * character.deviation) : null
@@ -110,7 +115,7 @@ export function assessLoopWeek(record: LoopRecord, setup: LoopSetup, week: WeekF
   const responses = explainResponses(explain, enough ? series : null, setup, activity.kind, noise, upsets)
   const benchmarkByHorizon = explainBenchmark(explain, series, setup, compression)
 
-  const features = gatherFeatures({ setup, prepared, series, ledger, oscillations: pattern ? [pattern, ...oscillations.slice(1)] : [], shape, error: character, reading, stick, slip, halves, panel, upsets })
+  const features = gatherFeatures({ setup, prepared, series, ledger, oscillations: pattern ? [pattern, ...oscillations.slice(1)] : [], shape, error: character, reading, stick, slip, stands, halves, panel, upsets })
   options.features?.(features)
   const tooShort = !enough ? 'Too few samples in a normal mode and away from the limits to look for a pattern.'
     : !pattern && series.used * series.intervalS < LEAST_SETTLINGS * setup.settlingS
@@ -233,6 +238,15 @@ function explainOnOff(explain: Explainer, prepared: PreparedRecord, setup: LoopS
 }
 
 interface Stretch { begin: number, end: number }
+
+/** Stands before jumps of PV; of its slope on level loops, which mostly integrate. */
+function standsIn(series: AnalysisSeries, { begin, end }: Stretch, setup: LoopSetup, sign: 1 | -1, noise: number, quantum: number): { found: StandsAndJumps, bends: boolean, runs: StickRuns | null } {
+  const bends = setup.type === 'level'
+  const width = Math.min(12, Math.max(2, Math.round(setup.settlingS / (bends ? 7.5 : 40) / series.intervalS)))
+  const found = standsAndJumps(series.pv.subarray(begin, end), series.op!.subarray(begin, end), series.sp && series.sp.subarray(begin, end),
+    { sign, noise, quantum, pvSpan: setup.pvHigh - setup.pvLow, opSpan: setup.opHigh - setup.opLow, width, bends })
+  return { found, bends, runs: bends ? stickRuns(series.pv.subarray(begin, end), series.op!.subarray(begin, end), sign) : null }
+}
 
 function longestSegment(series: AnalysisSeries): Stretch | null {
   return series.segments.reduce<Stretch | null>((a, b) => (a && a.end - a.begin >= b.end - b.begin ? a : b), null)

@@ -5,6 +5,8 @@ export interface FourierTransform {
   readonly size: number
   /** X_k = sum_t x_t exp(-2 pi i k t / size): real `x` (length size) into `out` (length 2 size, all frequencies). */
   forward(x: Float64Array, out: Float64Array): void
+  /** The same, only frequencies 0 .. size/2 are written: half the work where the rest is not looked at. */
+  forwardHalf(x: Float64Array, out: Float64Array): void
   /** x_t = (1/size) sum_k X_k exp(2 pi i k t / size): complex `spectrum` into `out`, both of length 2 size, not the same. */
   inverse(spectrum: Float64Array, out: Float64Array): void
 }
@@ -41,9 +43,7 @@ function requireLength(actual: number, wanted: number, what: string): void {
 
 function powerOfTwo(size: number): FourierTransform {
   const plan = new FFT(size)
-  return {
-    size,
-    forward(x, out) {
+  const forwardHalf = (x: Float64Array, out: Float64Array) => {
       requireLength(x.length, size, 'input')
       requireLength(out.length, 2 * size, 'output')
       // fft.js' real transform does not treat length 2 (its smallest radix block is 4)
@@ -52,10 +52,15 @@ function powerOfTwo(size: number): FourierTransform {
         out[1] = 0
         out[2] = x[0] - x[1]
         out[3] = 0
-        return
       }
-      plan.realTransform(out, x)
-      plan.completeSpectrum(out)
+      else plan.realTransform(out, x)
+  }
+  return {
+    size,
+    forwardHalf,
+    forward(x, out) {
+      forwardHalf(x, out)
+      if (size > 2) plan.completeSpectrum(out)
     },
     inverse(spectrum, out) {
       requireLength(spectrum.length, 2 * size, 'spectrum')
@@ -115,9 +120,7 @@ function chirp(size: number): FourierTransform {
       out[2 * k + 1] = im * cos[k] - re * sin[k]
     }
   }
-  return {
-    size,
-    forward(x, out) {
+  const forward = (x: Float64Array, out: Float64Array) => {
       requireLength(x.length, size, 'input')
       requireLength(out.length, 2 * size, 'output')
       for (let t = 0; t < size; t++) {
@@ -125,7 +128,12 @@ function chirp(size: number): FourierTransform {
         work[2 * t + 1] = 0
       }
       transform(out)
-    },
+  }
+  return {
+    size,
+    forward,
+    // a chirp transform knows no halves
+    forwardHalf: forward,
     inverse(spectrum, out) {
       requireLength(spectrum.length, 2 * size, 'spectrum')
       requireLength(out.length, 2 * size, 'output')
