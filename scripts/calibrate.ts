@@ -8,10 +8,11 @@
 import { readFileSync, writeFileSync } from 'node:fs'
 import { fileURLToPath } from 'node:url'
 import { FEATURES, type FeatureName, type FeatureValues } from '../shared/assessment/verdict/gatherFeatures'
-import { binOf, posteriorOf, type LikelihoodTable } from '../shared/assessment/verdict/likelihoods'
+import { binOf, LIKELIHOODS, posteriorOf, type LikelihoodTable } from '../shared/assessment/verdict/likelihoods'
 import { seededRandom } from '../shared/assessment/statistics/seededRandom'
 import { CAUSE_VERDICT, type Cause } from '../shared/assessment/simulation/scenario'
 import type { Verdict } from '../shared/assessment/types'
+import { calibrateWindows } from './calibrateWindows'
 import { LOOP_TYPES, runCases, type Case, type CaseResult } from './simulatedCases'
 
 export const FIRST_SEED = 1_000_000
@@ -155,26 +156,32 @@ function score(table: LikelihoodTable, loops: CaseResult[]): { loss: number, rig
   return { loss, right }
 }
 
-const loops = (await trainingLoops()).flatMap((r) => { const wide = withWiderTolerance(r); return wide ? [r, wide] : [r] })
-const rest = loops.filter(heldOut)
-const table = fit(loops.filter(r => !heldOut(r)))
-table.training.heldOut = rest.length
-let best = Infinity
-for (let t = 0.5; t <= 3; t *= 1.03) {
-  const { loss } = score({ ...table, temperature: t }, rest)
-  if (loss < best) {
-    best = loss
-    table.temperature = Number(t.toFixed(3))
+async function calibrateLoops(): Promise<LikelihoodTable> {
+  const loops = (await trainingLoops()).flatMap((r) => { const wide = withWiderTolerance(r); return wide ? [r, wide] : [r] })
+  const rest = loops.filter(heldOut)
+  const table = fit(loops.filter(r => !heldOut(r)))
+  table.training.heldOut = rest.length
+  let best = Infinity
+  for (let t = 0.5; t <= 3; t *= 1.03) {
+    const { loss } = score({ ...table, temperature: t }, rest)
+    if (loss < best) {
+      best = loss
+      table.temperature = Number(t.toFixed(3))
+    }
   }
+  const s = score(table, rest)
+  console.log(`${table.training.loops} loops fitted; ${rest.length} held out: ${(100 * s.right).toFixed(1)} % right, log loss ${s.loss.toFixed(3)}, temperature ${table.temperature}`)
+  for (const c of CLASSES) {
+    const own = rest.filter(r => CLASSES[classOf(r)] === c)
+    const said = own.map((r) => { const { probability } = posteriorOf(r.features as FeatureValues, table); return CLASSES[probability.indexOf(Math.max(...probability))] })
+    console.log(c.padEnd(16), CLASSES.map(k => String(said.filter(v => v === k).length).padStart(5)).join(''))
+  }
+  const file = fileURLToPath(new URL('../shared/assessment/verdict/likelihoods.json', import.meta.url))
+  const lines = table.features.map(f => `  ${JSON.stringify(f)}`).join(',\n')
+  const { features: _, ...head } = table
+  writeFileSync(file, `${JSON.stringify(head).slice(0, -1)},"features":[\n${lines}\n]}\n`)
+  return table
 }
-const s = score(table, rest)
-console.log(`${table.training.loops} loops fitted; ${rest.length} held out: ${(100 * s.right).toFixed(1)} % right, log loss ${s.loss.toFixed(3)}, temperature ${table.temperature}`)
-for (const c of CLASSES) {
-  const own = rest.filter(r => CLASSES[classOf(r)] === c)
-  const said = own.map((r) => { const { probability } = posteriorOf(r.features as FeatureValues, table); return CLASSES[probability.indexOf(Math.max(...probability))] })
-  console.log(c.padEnd(16), CLASSES.map(k => String(said.filter(v => v === k).length).padStart(5)).join(''))
-}
-const file = fileURLToPath(new URL('../shared/assessment/verdict/likelihoods.json', import.meta.url))
-const lines = table.features.map(f => `  ${JSON.stringify(f)}`).join(',\n')
-const { features: _, ...head } = table
-writeFileSync(file, `${JSON.stringify(head).slice(0, -1)},"features":[\n${lines}\n]}\n`)
+
+if (process.argv.includes('--windows')) await calibrateWindows(LIKELIHOODS, option('from'), option('save'))
+else await calibrateWindows(await calibrateLoops())

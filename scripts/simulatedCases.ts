@@ -6,6 +6,7 @@ import { fork } from 'node:child_process'
 import { fileURLToPath } from 'node:url'
 import { assessLoopWeek } from '../shared/assessment/assessLoopWeek'
 import { drawScenario } from '../shared/assessment/simulation/drawScenario'
+import { drawShortWindow, type WindowCondition } from '../shared/assessment/simulation/drawShortWindow'
 import { simulateLoop } from '../shared/assessment/simulation/simulateLoop'
 import type { Cause, LoopTruth } from '../shared/assessment/simulation/scenario'
 import { seededRandom } from '../shared/assessment/statistics/seededRandom'
@@ -14,8 +15,8 @@ import { weekFrame } from '../shared/assessment/week/isoWeek'
 
 export const LOOP_TYPES: LoopType[] = ['flow', 'pressure', 'level', 'temperature', 'analysis', 'other']
 
-/** `crop`: only a few cycles, or a short piece, of the record; training only */
-export interface Case { cause: Cause, type: LoopType, seed: number, crop?: boolean }
+/** `crop`: only a few cycles, or a short piece, of the record; training only. `window`: one of the short windows instead, `cause` is then only a heading */
+export interface Case { cause: Cause, type: LoopType, seed: number, crop?: boolean, window?: WindowCondition }
 export interface CaseResult extends Case {
   truth: Verdict
   /** cause beneath a record that is too slow or compressed */
@@ -28,6 +29,8 @@ export interface CaseResult extends Case {
   features: Record<string, number>
   /** set-up details left out, as on a site where the tuning was never written down */
   withoutTuning: boolean
+  /** short windows: times the stem broke loose */
+  slips?: number
 }
 
 /** Quick loops show in a day or two what slow ones show in a week. */
@@ -44,7 +47,8 @@ function optionsOf(type: LoopType, seed: number): { days: number, intervalS?: nu
 const WEEK = weekFrame('2026-W48', 'UTC')
 
 /** null: the draw did not come out visible, which the simulator says. */
-export function runCase({ cause, type, seed, crop }: Case): CaseResult | null {
+export function runCase({ cause, type, seed, crop, window }: Case): CaseResult | null {
+  if (window) return runWindow(window, type, seed)
   // some causes do not show in a short or coarse record of some types: then the usual one
   const drawn = drawOrNull(cause, type, seed, optionsOf(type, seed)) ?? drawOrNull(cause, type, seed, { days: DAYS[type] })
   if (!drawn) return null
@@ -57,6 +61,19 @@ export function runCase({ cause, type, seed, crop }: Case): CaseResult | null {
   const a = assessLoopWeek(record, setup, WEEK, [], { features: (v) => { features = v } })
   return {
     cause, type, seed, truth: drawn.truth.verdict, hidden: drawn.truth.facts.hidden === undefined ? null : String(drawn.truth.facts.hidden),
+    verdict: a.verdict, confidence: a.confidence, reason: a.verdictReason, findings: a.findings.map(f => ({ verdict: f.verdict, confidence: f.confidence, hours: f.hours })),
+    hours: a.hours, features, withoutTuning,
+  }
+}
+
+function runWindow(window: WindowCondition, type: LoopType, seed: number): CaseResult {
+  const { setup: drawn, record, truth } = drawShortWindow(window, type, seed)
+  const withoutTuning = seed % 2 === 0
+  const setup = withoutTuning ? { ...drawn, deadTimeS: null, gain: null, integralTimeS: null, derivativeTimeS: null, filterTimeS: null } : drawn
+  let features: Record<string, number> = {}
+  const a = assessLoopWeek(record, setup, WEEK, [], { features: (v) => { features = v } })
+  return {
+    cause: truth.verdict === 'huntingValve' ? 'stickingValve' : 'healthy', window, type, seed, truth: truth.verdict, hidden: null, slips: truth.slips,
     verdict: a.verdict, confidence: a.confidence, reason: a.verdictReason, findings: a.findings.map(f => ({ verdict: f.verdict, confidence: f.confidence, hours: f.hours })),
     hours: a.hours, features, withoutTuning,
   }

@@ -4,6 +4,8 @@ import type { FeatureName } from './gatherFeatures'
 interface EvidenceText { measure: string, source: string, text: (x: number) => string }
 
 const ours = 'Ours, see the methods'
+const runs = 'After He and others 2007; Srinivasan and others 2005'
+const slips = 'Ours, after Choudhury, Thornhill, Shah 2005'
 const times = (x: number, digits = 2) => Number(x.toPrecision(digits)).toString()
 const percent = (x: number) => `${Math.round(100 * x)} %`
 
@@ -52,4 +54,18 @@ export const EVIDENCE_TEXTS: Readonly<Record<FeatureName, EvidenceText>> = {
   burstRatio: { measure: 'Bursts of noise', source: ours, text: x => `The loudest hours are ${times(10 ** x)} times as noisy as the quiet ones.` },
   wildShare: { measure: 'Wild readings', source: ours, text: x => x > 0 ? `${times(100 * x)} % of the readings stand alone, far off their neighbours.` : 'No reading stands alone, far off its neighbours.' },
   offTargetShare: { measure: 'Hours off target', source: 'Week ledger', text: x => `${percent(x)} of the judged hours are off target.` },
+  jumpSlips: { measure: 'Strokes of a sticking valve', source: slips, text: x => `PV stood while OP moved on, then jumped the way OP had asked: ${times(x)} times.` },
+  jumpSlipShare: { measure: 'Share of the jumps', source: slips, text: x => `${percent(x)} of PV's jumps came after such a stand.` },
+  jumpTravel: { measure: 'Travel before the jump', source: slips, text: x => `Before it jumped, OP had travelled ${times(x)} times as far, in shares of their spans.` },
+  jumpFollow: { measure: 'PV during the stand', source: slips, text: x => x > 0 ? `While OP moved on, PV had gone ${percent(x)} of the way.` : 'While OP moved on, PV did not follow.' },
+  jumpStandGain: { measure: 'Gain during the stand', source: slips, text: x => `While OP moved on, PV answered with a gain of ${times(x)}; a stem that stands gives 0.` },
+  jumpOffset: { measure: 'Offset before the jump', source: slips, text: x => `PV stood ${times(x)} jumps off its set point.` },
+  jumpSize: { measure: 'Size of the jumps', source: slips, text: x => `The jumps are ${times(x)} times what stands out of noise and upsets.` },
+  bendSlips: { measure: 'Strokes of a sticking valve', source: slips, text: x => `PV ran on straight while OP moved on, then bent the way OP had asked: ${times(x)} times.` },
+  bendSlipShare: { measure: 'Share of the bends', source: slips, text: x => `${percent(x)} of PV's bends came after such a run.` },
+  bendFollow: { measure: 'PV during the run', source: slips, text: x => x > 0 ? `While OP moved on, PV's slope had gone ${percent(x)} of the way.` : 'While OP moved on, PV ran on straight.' },
+  bendOffset: { measure: 'Offset before the bend', source: slips, text: x => `PV was ${times(x)} times its usual error off the set point.` },
+  bendSize: { measure: 'Size of the bends', source: slips, text: x => `The bends are ${times(x)} times what stands out of noise and upsets.` },
+  runGain: { measure: 'Straight runs', source: runs, text: x => `A sticking stem leaves ${percent(Math.exp(-x))} of the level's movement that a sound one leaves unexplained.` },
+  runExplained: { measure: 'Fit of straight runs', source: runs, text: x => `A sticking stem explains ${percent(x)} of the level's movement.` },
 }

@@ -9,6 +9,8 @@ import type { CycleShape } from './cycleShape'
 import type { ErrorCharacter } from './errorCharacter'
 import type { HalfCycles } from './halfCycles'
 import type { SlipEvents } from './slipEvents'
+import type { StandsAndJumps } from './standsAndJumps'
+import type { StickRuns } from './stickRuns'
 import type { StickFit } from './stickFit'
 import type { Recoveries } from './recoveries'
 import type { ValvePanel } from './valvePanel'
@@ -22,7 +24,9 @@ export const FEATURES = [
   'errorDecayOverSettling', 'staySideOverSettling', 'slowShare', 'recoveryOverSettling', 'swingBack', 'idleIndex',
   'whiteness', 'kurtosis', 'deviationOverTolerance', 'noiseOverTolerance', 'noiseShare', 'burstRatio', 'wildShare', 'offTargetShare',
 ] as const
-export type FeatureName = typeof FEATURES[number]
+/** Figures of the second table, which speaks only where the record is short (`slipTable`). */
+export const SHORT_FEATURES = ['jumpSlips', 'jumpSlipShare', 'jumpTravel', 'jumpFollow', 'jumpStandGain', 'jumpOffset', 'jumpSize', 'bendSlips', 'bendSlipShare', 'bendFollow', 'bendOffset', 'bendSize', 'runGain', 'runExplained'] as const
+export type FeatureName = typeof FEATURES[number] | typeof SHORT_FEATURES[number]
 export type FeatureValues = Record<FeatureName, number>
 
 export interface FeatureParts {
@@ -38,12 +42,14 @@ export interface FeatureParts {
   upsets: Recoveries | null
   stick: StickFit | null
   slip: SlipEvents | null
+  /** null where the record is not short */
+  stands: { found: StandsAndJumps, bends: boolean, runs: StickRuns | null } | null
   halves: HalfCycles | null
 }
 
 export function gatherFeatures(parts: FeatureParts): FeatureValues {
   const { setup, prepared, series, ledger, oscillations, shape, error, reading } = parts
-  const v = Object.fromEntries(FEATURES.map(f => [f, NaN])) as FeatureValues
+  const v = Object.fromEntries([...FEATURES, ...SHORT_FEATURES].map(f => [f, NaN])) as FeatureValues
   const o = oscillations[0]
   const { hours } = ledger
   const judgedHours = hours.hunting + hours.offTarget + hours.steady
@@ -94,6 +100,16 @@ export function gatherFeatures(parts: FeatureParts): FeatureValues {
   if (parts.slip && parts.slip.looked >= 2) {
     v.slipShare = parts.slip.slips / parts.slip.looked
     v.slipCount = parts.slip.slips
+  }
+  if (parts.stands) {
+    const { found, bends, runs } = parts.stands
+    if (runs) {
+      v.runGain = runs.gain
+      v.runExplained = runs.explained
+    }
+    const share = found.looked > 0 ? found.slips / found.looked : NaN
+    if (bends) Object.assign(v, { bendSlips: found.slips, bendSlipShare: share, bendFollow: found.follow, bendOffset: found.offset, bendSize: found.size })
+    else Object.assign(v, { jumpSlips: found.slips, jumpSlipShare: share, jumpTravel: found.travel, jumpFollow: found.follow, jumpStandGain: found.standGain, jumpOffset: found.offset, jumpSize: found.size })
   }
   if (parts.halves) {
     v.halfLengthVariation = parts.halves.lengthVariation

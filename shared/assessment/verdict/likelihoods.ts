@@ -11,6 +11,7 @@
 import table from './likelihoods.json'
 import type { Verdict } from '../types'
 import type { FeatureName, FeatureValues } from './gatherFeatures'
+import { SLIP_TABLE, type SlipTable } from './slipTable'
 
 export interface LikelihoodTable {
   /** how it was made: command, seeds, number of loops */
@@ -51,7 +52,8 @@ export interface Posterior {
 /** Loops differ from simulated ones in ways no table knows: no cause is ever surer than this (ours). */
 const SUREST = 0.97
 
-export function posteriorOf(values: FeatureValues, likelihoods: LikelihoodTable = LIKELIHOODS): Posterior {
+/** @param strokes second table, for short records; null: none. It speaks where strokes were looked for (`jumpSlips` or `bendSlips` is there) */
+export function posteriorOf(values: FeatureValues, likelihoods: LikelihoodTable = LIKELIHOODS, strokes: SlipTable | null = likelihoods === LIKELIHOODS ? SLIP_TABLE : null): Posterior {
   const { classes, base, temperature, features } = likelihoods
   const score = base.map(b => b / temperature)
   const contributions = features.map((f) => {
@@ -63,6 +65,26 @@ export function posteriorOf(values: FeatureValues, likelihoods: LikelihoodTable 
   const top = Math.max(...score)
   const e = score.map(s => Math.exp(s - top))
   const sum = e.reduce((a, b) => a + b, 0)
+  const v = classes.indexOf('huntingValve')
+  if (strokes && v >= 0 && (values.jumpSlips >= 0 || values.bendSlips >= 0)) {
+    const rest = sum - e[v]
+    const { base: level, scale } = values.regularity === values.regularity ? strokes.withRhythm : strokes.withoutRhythm
+    let logit = level + scale * Math.log(e[v] / rest)
+    // what the first table's figures still say about the valve, against the other causes
+    for (const f of contributions) {
+      let other = 0
+      f.perClass.forEach((w, c) => { if (c !== v) other += (e[c] / rest) * w })
+      f.perClass[v] = other + scale * (f.perClass[v] - other)
+    }
+    for (const f of strokes.features) {
+      const bin = binOf(f.edges, values[f.name])
+      logit += f.weights[bin]
+      contributions.push({ name: f.name, bin, edges: f.edges, perClass: classes.map((_, c) => (c === v ? f.weights[bin] : 0)) })
+    }
+    // the others keep their proportions, and the sum stays as it was
+    const p = 1 / (1 + Math.exp(-logit))
+    for (let c = 0; c < e.length; c++) e[c] = c === v ? p * sum : (e[c] / rest) * (1 - p) * sum
+  }
   const floor = (1 - SUREST) / (classes.length - 1)
   // a little of the probability always stays with the others
   const probability = e.map(v => floor + (v / sum) * (SUREST - floor))
