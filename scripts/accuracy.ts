@@ -3,13 +3,15 @@
  *
  * 1,008 loops, balanced over 14 causes and 6 loop types, seeds from FIRST_SEED upwards. Prints the confusion matrix, recall, precision,
  * calibration error and false accusations, and writes them as Markdown to ACCURACY.md; where README.md has the lines
- * `<!-- accuracy -->` and `<!-- /accuracy -->`, what lies between is replaced. Options: --seeds N a cause and type, --save FILE, --from FILE.
+ * `<!-- accuracy -->` and `<!-- /accuracy -->`, what lies between is replaced. With --windows the same for short windows (windowAccuracy.ts), which
+ * have a chapter of their own in ACCURACY.md. Options: --seeds N a cause and type, --first SEED (windows), --save FILE, --from FILE.
  */
 import { existsSync, readFileSync, writeFileSync } from 'node:fs'
 import { fileURLToPath } from 'node:url'
 import { CAUSES } from '../shared/assessment/simulation/scenario'
 import { VERDICTS, type Verdict } from '../shared/assessment/types'
 import { LOOP_TYPES, runCases, type Case, type CaseResult } from './simulatedCases'
+import { windowAccuracy } from './windowAccuracy'
 
 // Never looked at while rules were written: take a new one after wrong cases of this set were looked at.
 export const FIRST_SEED = 7_000_000
@@ -17,6 +19,24 @@ const option = (name: string) => { const i = process.argv.indexOf(`--${name}`); 
 const seeds = Number(option('seeds') ?? 12)
 
 const from = option('from')
+const root = (name: string) => fileURLToPath(new URL(`../${name}`, import.meta.url))
+/** Each command writes its own chapter and leaves the other. */
+const WINDOWS_HEAD = '\n## Short windows\n\n'
+function writeChapter(chapter: 'loops' | 'windows', text: string): void {
+  const file = root('ACCURACY.md')
+  const [loops, windows] = existsSync(file) ? readFileSync(file, 'utf8').split(WINDOWS_HEAD) : ['']
+  const first = chapter === 'loops' ? `# How right the verdicts are\n\n${text}\n` : loops
+  const second = chapter === 'windows' ? `${text}\n` : windows
+  writeFileSync(file, second === undefined ? first : `${first}${WINDOWS_HEAD}${second}`)
+}
+if (process.argv.includes('--windows')) {
+  const seeds = option('seeds')
+  const text = await windowAccuracy({ seeds: seeds ? Number(seeds) : undefined, firstSeed: option('first') ? Number(option('first')) : undefined, from, save: option('save'), wrong: process.argv.includes('--wrong') })
+  console.log(`\n${text}`)
+  if (!seeds && !from && !option('first')) writeChapter('windows', text)
+  process.exit(0)
+}
+
 const cases: Case[] = CAUSES.flatMap(cause => LOOP_TYPES.flatMap(type => Array.from({ length: seeds }, (_, s) => ({ cause, type, seed: FIRST_SEED + s }))))
 const results: CaseResult[] = from
   ? JSON.parse(readFileSync(from, 'utf8')) as CaseResult[]
@@ -75,9 +95,8 @@ say('', '| confidence said | verdicts | mean | right |', '|---|---|---|---|', ..
 
 const text = lines.join('\n')
 console.log(`\n${text}`)
-const root = (name: string) => fileURLToPath(new URL(`../${name}`, import.meta.url))
 if (!option('seeds') && !from) {
-  writeFileSync(root('ACCURACY.md'), `# How right the verdicts are\n\n${text}\n`)
+  writeChapter('loops', text)
   if (existsSync(root('README.md'))) {
     const readme = readFileSync(root('README.md'), 'utf8')
     const replaced = readme.replace(/(<!-- accuracy -->\n)[\s\S]*?(<!-- \/accuracy -->)/, `$1${text}\n$2`)

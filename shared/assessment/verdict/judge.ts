@@ -50,6 +50,9 @@ const LEAST_CONFIDENCE = 0.55
 const LEAST_WITHOUT_LOSS = 0.7
 const LEAST_VALVE = 0.65
 
+/** A single stroke can be a load step that came at the wrong time: it is named only when all else fits (ours). */
+const LEAST_ONE_STROKE = 0.8
+
 const SUREST_ALONE = 0.92
 /** That a cause cannot be told is itself no estimate (ours). */
 const CANNOT_TELL = 0.9
@@ -178,11 +181,12 @@ function inferredFinding(facts: Facts, posterior: Posterior): Judgement {
   if (p < LEAST_CONFIDENCE) return undecided(`The evidence points two ways: ${NAMES[verdict]} (${percent(p)}) or ${NAMES[classes[order[1]]]} (${percent(probability[order[1]])}).`)
   if (verdict === 'huntingValve' && p < LEAST_VALVE) return undecided(`A sticking valve is possible (${percent(p)}), but not sure enough to name it.`)
   // an uneven or small swing accuses the valve only when the valve itself shows a mark
-  if (verdict === 'huntingValve' && !(hunts && features.regularity > 0) && !valveMark(features)) return undecided(`A sticking valve is possible (${percent(p)}), but no test of the valve itself speaks for it.`)
+  if (verdict === 'huntingValve' && !(hunts && features.regularity > 0) && !valveMark(features, p)) return undecided(`A sticking valve is possible (${percent(p)}), but no test of the valve itself speaks for it.`)
   if (HUNTING.includes(verdict) && !hunts && p < LEAST_WITHOUT_LOSS) return undecided('There is a small swing whose cause is not clear.')
-  // two jumps in a short record are too few to name the valve, and too many to call the loop sound
-  if (!HUNTING.includes(verdict) && verdict !== 'sensor' && features.slipCount >= 2 && features.slipShare >= 0.5 && probability[classes.indexOf('huntingValve')] >= 0.2)
-    return undecided(`PV stood, then jumped across the set point ${features.slipCount} times, as with a sticking valve. That is too little to be sure: check the valve or send a longer record.`)
+  // jumps that are too few or too doubtful to name the valve, and too many to call the loop sound
+  const seen = strokesOf(features) ?? (features.slipCount >= 2 && features.slipShare >= 0.5 ? { strokes: features.slipCount, share: features.slipShare } : null)
+  if (!HUNTING.includes(verdict) && verdict !== 'sensor' && seen && seen.strokes >= 2 && seen.share >= 0.5 && probability[classes.indexOf('huntingValve')] >= 0.2)
+    return undecided(`PV stood, then ${features.bendSlips >= 0 ? 'bent' : 'jumped'} the way OP had asked ${seen.strokes} times, as with a sticking valve. That is too little to be sure: check the valve or send a longer record.`)
   const harmless = hours.offTarget > 0 ? null
     : verdict === 'sluggish' ? 'The loop keeps within its tolerance, though it works off upsets slowly.'
       : verdict === 'noise' && !(features.noiseOverTolerance >= NOISE_THAT_MATTERS) ? 'The loop keeps within its tolerance; what is left is mostly noise.'
@@ -195,16 +199,29 @@ function inferredFinding(facts: Facts, posterior: Posterior): Judgement {
   if (verdict === 'steady' && features.offTargetShare > 0.2) return undecided(`The loop was off target for ${h(hours.offTarget)}, without a pattern that names a cause.`)
   if (verdict === 'steady' && hours.steady === 0 && facts.timeInTolerance !== null && facts.timeInTolerance < 0.8) return undecided(`The error was outside the tolerance for ${percent(1 - facts.timeInTolerance)} of the record, without a pattern that names a cause.`)
   const own = finding(top)
+  const strokes = strokesOf(features)
+  const uneven = strokes ? `PV ${features.bendSlips >= 0 ? 'ran on straight' : 'stood'} while OP moved on, then ${features.bendSlips >= 0 ? 'bent' : 'jumped'} the way OP had asked${strokes.strokes > 1 ? `, ${strokes.strokes} times` : ''}: the valve most likely sticks.` : UNEVEN_VALVE
   const extra = own.hours > 0 ? ` It cost ${h(own.hours)}.` : verdict === 'steady' ? '' : ' It cost no hour so far.'
   return {
-    verdict, confidence: own.confidence, verdictReason: (verdict === 'huntingValve' && !oscillations.length ? UNEVEN_VALVE : STATEMENTS[verdict]) + extra, findings: [own, ...others],
+    verdict, confidence: own.confidence, verdictReason: (verdict === 'huntingValve' && !oscillations.length ? uneven : STATEMENTS[verdict]) + extra, findings: [own, ...others],
     evidence: own.evidence, nextActions: NEXT_ACTIONS[verdict], valveLikely: false,
   }
 }
 
-/** A mark that only a sticking valve leaves: slips, stand and jump, a clear gain of the sticking stem, or a swing that stops in manual. */
-function valveMark(f: FeatureValues): boolean {
-  return (f.slipCount >= 2 && f.slipShare >= 0.3) || (f.standingTravel > 0.55 && f.jumpShare > 0.55) || (f.stickGain > 0.05 && f.stickExplained > 0.5) || f.manualSwing < 0.3
+/** Single strokes, looked for in short records; null where they were not, or none was seen. */
+function strokesOf(f: FeatureValues): { strokes: number, share: number } | null {
+  if (f.jumpSlips >= 1) return { strokes: f.jumpSlips, share: f.jumpSlipShare }
+  return f.bendSlips >= 1 ? { strokes: f.bendSlips, share: f.bendSlipShare } : null
+}
+
+/**
+ * A mark that only a sticking valve leaves: slips, strokes, stand and jump, a clear gain of the sticking stem, or a swing that stops in manual.
+ * @param p its probability
+ */
+function valveMark(f: FeatureValues, p: number): boolean {
+  const seen = strokesOf(f)
+  if (seen && seen.share >= 0.3 && (seen.strokes >= 2 || p >= LEAST_ONE_STROKE)) return true
+  return (f.slipCount >= 2 && f.slipShare >= 0.3) || (f.standingTravel > 0.55 && f.jumpShare > 0.55) || f.runGain > 1 || (f.stickGain > 0.05 && f.stickExplained > 0.5) || f.manualSwing < 0.3
 }
 
 const NAMES: Readonly<Record<Verdict, string>> = {
