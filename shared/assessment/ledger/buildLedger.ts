@@ -52,7 +52,22 @@ export function buildLedger(prepared: PreparedRecord, tolerance: number, week: W
     const to = next - from < 1.5 * dt ? next : from + dt
     const bad = (f & FROZEN) !== 0 || pv[i] !== pv[i] || (f & OUT_OF_RANGE) !== 0
     const e = error && !bad ? Math.abs(error[i]) : NaN
-    // nearly always one pass: only a sample over the hour's edge is split
+    if (to <= edges[h + 1]) {
+      // nearly always: the sample lies within its hour
+      const d = to - from
+      received[h] += d
+      if (bad) sensor[h] += d
+      if (f !== RECEIVED) {
+        if ((f & OFF_NORMAL) !== 0) manual[h] += d
+        if ((f & (AT_LOW | AT_HIGH)) !== 0) limit[h] += d
+      }
+      if (e === e) {
+        errorTime[h] += d
+        errorSum[h] += d * e
+      }
+      continue
+    }
+    // a sample over the hour's edge is split
     for (let k = h; k < count && from < to; k++) {
       const end = to < edges[k + 1] ? to : edges[k + 1]
       const d = end - from

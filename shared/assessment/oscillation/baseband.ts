@@ -19,7 +19,7 @@ export function stepSpectrum(steps: Float64Array): StepSpectrum {
   const padded = new Float64Array(size)
   padded.set(steps)
   const spectrum = new Float64Array(2 * size)
-  fft(size).forward(padded, spectrum)
+  fft(size).forwardHalf(padded, spectrum)
   return { spectrum, size, length: steps.length }
 }
 

@@ -78,7 +78,9 @@ export function prepareRecord(record: LoopRecord, setup: LoopSetup, week: WeekFr
     // steps between neighbours in whole intervals; 1 is the plain case
     let extra = 0
     for (let i = 1; i < t.length; i++) {
-      const step = Math.round((t[i] - t[i - 1]) / intervalMs)
+      const spacing = t[i] - t[i - 1]
+      if (spacing === intervalMs) continue
+      const step = Math.round(spacing / intervalMs)
       if (step > SHORT_GAP_INTERVALS) longGaps++
       else if (step > 1) extra += step - 1
     }
@@ -147,7 +149,10 @@ export function prepareRecord(record: LoopRecord, setup: LoopSetup, week: WeekFr
   }
   const pvInRange = outOfRange > 0 ? pv.slice() : pv
 
-  const hasMode = mode !== null && mode.some(m => m !== MODE_UNKNOWN && m < record.modeNames.length)
+  const named = Math.min(record.modeNames.length, MODE_UNKNOWN)
+  let firstNamed = 0
+  if (mode) while (firstNamed < n && mode[firstNamed] >= named) firstNamed++
+  const hasMode = mode !== null && firstNamed < n
   const normal = new Uint8Array(256)
   const normalNames = new Set(setup.normalModes.map(m => m.toUpperCase()))
   record.modeNames.forEach((name, code) => { normal[code] = normalNames.has(name.toUpperCase()) ? 1 : 0 })
@@ -169,7 +174,7 @@ export function prepareRecord(record: LoopRecord, setup: LoopSetup, week: WeekFr
     }
     if (hasMode) {
       const m = mode![i]
-      if (m !== MODE_UNKNOWN && m < record.modeNames.length) f |= normal[m] ? MODE_KNOWN : MODE_KNOWN | OFF_NORMAL
+      if (m < named) f |= normal[m] ? MODE_KNOWN : MODE_KNOWN | OFF_NORMAL
     }
     flags[i] = f
     if (error) error[i] = sp![i] - pvInRange[i]

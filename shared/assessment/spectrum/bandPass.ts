@@ -48,7 +48,7 @@ export function bandPass(
   const transform = fft(size)
   const spectrum = new Float64Array(2 * size)
   const filtered = new Float64Array(2 * size)
-  transform.forward(extended, spectrum)
+  transform.forwardHalf(extended, spectrum)
   for (let k = 0; k <= size / 2; k++) {
     const f = k / (size * sampleIntervalS)
     const weight = k === 0 ? 0 : edge(f, lowHz, -edgeFraction) * edge(f, highHz, edgeFraction)

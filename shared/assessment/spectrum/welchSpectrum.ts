@@ -52,7 +52,7 @@ export function welchSpectrum(
     for (let i = 0; i < length; i++) sum += x[from + i]
     const m = sum / length
     for (let i = 0; i < length; i++) segment[i] = (x[from + i] - m) * window[i]
-    transform.forward(segment, spectrum)
+    transform.forwardHalf(segment, spectrum)
     for (let k = 0; k < bins; k++) power[k] += spectrum[2 * k] * spectrum[2 * k] + spectrum[2 * k + 1] * spectrum[2 * k + 1]
     segments++
   }

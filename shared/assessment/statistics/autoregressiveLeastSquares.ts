@@ -60,17 +60,30 @@ function lagMatrix(d: Float64Array, p: number): Float64Array {
   const n = d.length
   const size = p + 1
   const c = new Float64Array(size * size)
-  for (let i = 0; i <= p; i++) {
+  // four lags in one pass: each sample is loaded once for all of them
+  let i = 0
+  for (; i + 3 <= p; i += 4) {
     let s0 = 0, s1 = 0, s2 = 0, s3 = 0
-    let t = p
-    for (; t + 3 < n; t += 4) {
-      s0 += d[t] * d[t - i]
-      s1 += d[t + 1] * d[t + 1 - i]
-      s2 += d[t + 2] * d[t + 2 - i]
-      s3 += d[t + 3] * d[t + 3 - i]
+    let b = d[p - i - 1], e = d[p - i - 2], f = d[p - i - 3]
+    for (let t = p, k = p - i; t < n; t++, k++) {
+      const x = d[t], a = d[k]
+      s0 += x * a
+      s1 += x * b
+      s2 += x * e
+      s3 += x * f
+      f = e
+      e = b
+      b = a
     }
-    for (; t < n; t++) s0 += d[t] * d[t - i]
-    c[i * size] = (s0 + s1) + (s2 + s3)
+    c[i * size] = s0
+    c[(i + 1) * size] = s1
+    c[(i + 2) * size] = s2
+    c[(i + 3) * size] = s3
+  }
+  for (; i <= p; i++) {
+    let s0 = 0
+    for (let t = p; t < n; t++) s0 += d[t] * d[t - i]
+    c[i * size] = s0
   }
   // the next diagonal element sees the same products, one sample earlier
   for (let j = 1; j <= p; j++) {

@@ -11,13 +11,14 @@ import { requireFinite } from './requireFinite'
  * Source: definition. Reference: through autocorrelation.
  */
 export function deviations(x: Float64Array, name: string): Float64Array {
-  requireFinite(x, name)
+  const m = mean(x)
+  // one value that is not finite makes the mean so; only then it is looked for
+  if (!Number.isFinite(m)) requireFinite(x, name)
   const out = new Float64Array(x.length)
   const first = x[0]
   let i = 1
   while (i < x.length && x[i] === first) i++
   if (i === x.length) return out
-  const m = mean(x)
   for (i = 0; i < x.length; i++) out[i] = x[i] - m
   return out
 }

@@ -50,7 +50,7 @@ export function laggedProducts(a: Float64Array, b: Float64Array, maxLag: number)
   const load = (x: Float64Array, from: number, out: Float64Array): void => {
     padded.fill(0)
     padded.set(x.subarray(from, Math.min(n, from + block)))
-    transform.forward(padded, out)
+    transform.forwardHalf(padded, out)
   }
   let spectrumB = new Float64Array(2 * size)
   let nextB = new Float64Array(2 * size)

@@ -29,7 +29,8 @@ export interface StickFit {
 const MOST = 1200
 const BREAKAWAY = [0.14, 0.24, 0.36, 0.5, 0.66, 0.84]
 const SLACK = [0, 0.5, 0.95]
-const LAGS = [0, 2, 8]
+/** samples; beside them no lag, and an integrator */
+const LAGS = [2, 8]
 
 /**
  * @param pv PV, or minus the control error where the set point moves; finite, regular, length n
@@ -53,41 +54,45 @@ export function stickFit(pv: Float64Array, op: Float64Array, sign: 1 | -1, windo
   if (!(yy > 0) || !(range > 0)) return null
 
   const stem = new Float64Array(n)
-  const z = new Float64Array(n)
   const x = new Float64Array(n)
   const w = new Float64Array(n)
+  const [z0, z1, z2, z3] = Array.from({ length: 4 }, () => new Float64Array(n))
+  const [decay1, decay2] = LAGS.map(lag => Math.exp(-1 / lag))
   const best = { explained: 0, fs: 0, fd: 0 }
   const share = (zy: number, zz: number) => (zz > 0 && zy * sign > 0 ? (zy * zy) / (zz * yy) : 0)
-  const tryStem = (): number => {
-    let top = 0
-    freed(stem, half, x)
-    for (let l = 0; l <= LAGS.length; l++) {
-      const integrator = l === LAGS.length
-      const a = integrator ? 0 : LAGS[l] > 0 ? Math.exp(-1 / LAGS[l]) : 0
-      let state = 0
-      for (let i = 0; i < n; i++) {
-        state = integrator ? state + x[i] : a * state + (1 - a) * x[i]
-        z[i] = state
-      }
-      // lag and integrator bring slow parts back in
-      freed(z, half, w)
-      // the delays 0, 1 and 3 in one pass; y ends in zeros
-      let zz3 = 0
-      let zy0 = 0
-      let zy1 = 0
-      let zy3 = 0
-      for (let i = 0; i < n; i++) {
-        const v = w[i]
-        if (i < n - 3) zz3 += v * v
-        zy0 += v * y[i]
-        zy1 += v * y[i + 1]
-        zy3 += v * y[i + 3]
-      }
-      const zz1 = zz3 + w[n - 3] * w[n - 3] + w[n - 2] * w[n - 2]
-      const zz0 = zz1 + w[n - 1] * w[n - 1]
-      top = Math.max(top, share(zy0, zz0), share(zy1, zz1), share(zy3, zz3))
+  const explainedBy = (z: Float64Array): number => {
+    // lag and integrator bring slow parts back in
+    freed(z, half, w)
+    // the delays 0, 1 and 3 in one pass; y ends in zeros
+    let zz3 = 0
+    let zy0 = 0
+    let zy1 = 0
+    let zy3 = 0
+    for (let i = 0; i < n; i++) {
+      const v = w[i]
+      if (i < n - 3) zz3 += v * v
+      zy0 += v * y[i]
+      zy1 += v * y[i + 1]
+      zy3 += v * y[i + 3]
     }
-    return top
+    const zz1 = zz3 + w[n - 3] * w[n - 3] + w[n - 2] * w[n - 2]
+    const zz0 = zz1 + w[n - 1] * w[n - 1]
+    return Math.max(share(zy0, zz0), share(zy1, zz1), share(zy3, zz3))
+  }
+  const tryStem = (): number => {
+    freed(stem, half, x)
+    // no lag, two lags and an integrator side by side: none has to wait for its own last step
+    let s1 = 0
+    let s2 = 0
+    let s3 = 0
+    for (let i = 0; i < n; i++) {
+      const v = x[i]
+      z1[i] = s1 = decay1 * s1 + (1 - decay1) * v
+      z2[i] = s2 = decay2 * s2 + (1 - decay2) * v
+      z3[i] = s3 += v
+    }
+    z0.set(x)
+    return Math.max(explainedBy(z0), explainedBy(z1), explainedBy(z2), explainedBy(z3))
   }
   stem.set(u)
   const linear = tryStem()
@@ -137,11 +142,19 @@ function freed(x: Float64Array, half: number, out = new Float64Array(x.length)):
     sum += x[i]
     count++
   }
-  for (let i = 0; i < n; i++) {
-    if (i + half < n) {
-      sum += x[i + half]
-      count++
-    }
+  let i = 0
+  for (; i <= half && i + half < n; i++) {
+    sum += x[i + half]
+    count++
+    out[i] = x[i] - sum / count
+  }
+  // the middle: one in, one out
+  for (; i + half < n; i++) {
+    sum += x[i + half]
+    sum -= x[i - half - 1]
+    out[i] = x[i] - sum / count
+  }
+  for (; i < n; i++) {
     if (i - half - 1 >= 0) {
       sum -= x[i - half - 1]
       count--
