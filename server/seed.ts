@@ -9,6 +9,9 @@ import { threadPool } from './worker/threadPool'
 const environment = readEnvironment(process.env)
 const db = openDatabase(environment.DATABASE_URL, { poolSize: 4 })
 const pool = threadPool('seedLoop', environment.WORKER_THREADS ?? availableParallelism())
+// The start command that launched us is gone; whatever is done stays done. Waiting for that must not keep us alive.
+process.on('disconnect', () => process.exit(1))
+process.channel?.unref()
 const started = Date.now()
 let said = 0
 try {

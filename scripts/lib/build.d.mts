@@ -1,2 +1,2 @@
 export function buildWorker(): Promise<void>
-export function buildWeb(): Promise<void>
+export function buildWeb(signal?: AbortSignal): Promise<void>

@@ -1,4 +1,4 @@
-import { existsSync, mkdirSync, readdirSync, readFileSync, rmdirSync, rmSync, statSync, writeFileSync } from 'node:fs'
+import { existsSync, mkdirSync, readdirSync, readFileSync, rmSync, writeFileSync } from 'node:fs'
 import { built, root, webEntry, workerFolder } from './paths.mjs'
 import { run } from './run.mjs'
 import { say } from './say.mjs'
@@ -7,19 +7,22 @@ import { hashOf, webSources, workerSources } from './sources.mjs'
 const stamped = (name, hash) => existsSync(`${built}/${name}.hash`) && readFileSync(`${built}/${name}.hash`, 'utf8') === hash
 const stamp = (name, hash) => writeFileSync(`${built}/${name}.hash`, hash)
 
-/** Two processes that build at once would tear each other's output: the second waits. A lock of a dead process falls after 10 minutes. */
+/** Two processes that build at once would tear each other's output: the second waits. The lock names its process and falls with it. */
 async function alone(work) {
   mkdirSync(built, { recursive: true })
-  const lock = `${built}/building`
+  const lock = `${built}/building.pid`
   for (;;) {
-    try { mkdirSync(lock); break }
-    catch {
-      const since = statSync(lock, { throwIfNoEntry: false })?.mtimeMs
-      if (since && Date.now() - since > 600_000) rmSync(lock, { recursive: true, force: true })
+    try { writeFileSync(lock, String(process.pid), { flag: 'wx' }); break }
+    catch (error) {
+      if (error.code !== 'EEXIST') throw error
+      let holder = ''
+      try { holder = readFileSync(lock, 'utf8') }
+      catch { /* let go just now */ }
+      if (holder && !existsSync(`/proc/${holder}`)) rmSync(lock, { force: true })
       await new Promise(resolve => setTimeout(resolve, 300))
     }
   }
-  const letGo = () => { try { rmdirSync(lock) } catch { /* already gone */ } }
+  const letGo = () => rmSync(lock, { force: true })
   process.once('exit', letGo)
   try { return await work() }
   finally { letGo(); process.off('exit', letGo) }
@@ -49,13 +52,16 @@ export function buildWorker() {
 }
 
 /** Builds the web application when one of its sources changed. */
-export function buildWeb() {
+export function buildWeb(signal) {
   return alone(async () => {
     const hash = hashOf(webSources)
     if (stamped('web', hash) && existsSync(webEntry)) return
     say('Building the application (about a minute) ...')
     const started = Date.now()
-    await run(`${root}/node_modules/.bin/nuxi`, ['build'], { cwd: root, env: { ...process.env, NODE_ENV: 'production', NUXT_TELEMETRY_DISABLED: '1' }, quiet: true, orStop: 'The application could not be built; see above.' })
+    // a build that outlived a killed start would tear the next one's output
+    const endWithUs = 'data:text/javascript,process.on("disconnect",()=>process.exit(1));process.channel.unref()'
+    await run(process.execPath, ['--import', endWithUs, `${root}/node_modules/.bin/nuxi`, 'build'], {
+      ipc: true, cwd: root, env: { ...process.env, NODE_ENV: 'production', NUXT_TELEMETRY_DISABLED: '1' }, quiet: true, signal, orStop: 'The application could not be built; see above.' })
     stamp('web', hash)
     say(`Built in ${Math.round((Date.now() - started) / 1000)} s.`)
   })

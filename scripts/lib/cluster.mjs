@@ -1,6 +1,7 @@
 import { spawn } from 'node:child_process'
 import { createHash, randomBytes } from 'node:crypto'
 import { chmodSync, existsSync, mkdirSync, readFileSync, renameSync, rmSync, writeFileSync } from 'node:fs'
+import { writeWhole } from './dataFolder.mjs'
 import { ensureDebianPackages, postgresPrograms } from './debianPackages.mjs'
 import { freePort, tryPort } from './freePort.mjs'
 import { run } from './run.mjs'
@@ -8,7 +9,7 @@ import { say, Stop } from './say.mjs'
 
 const isRoot = () => process.getuid?.() === 0
 // PostgreSQL refuses to run as root
-const asServer = (program, args, options) => isRoot() ? run('runuser', ['-u', 'postgres', '--', program, ...args], { cwd: '/', ...options }) : run(program, args, { cwd: '/', ...options })
+const asServer = (program, args, options) => isRoot() ? run('runuser', ['-u', 'postgres', '--', program, ...args], { cwd: '/', apart: true, ...options }) : run(program, args, { cwd: '/', apart: true, ...options })
 
 /** Where the cluster of a data folder lives: inside it, unless the server's user cannot walk there (a root's home, say). */
 export async function clusterFolder(dataDir) {
@@ -55,7 +56,7 @@ export async function startCluster(folder, { scratch = false } = {}) {
     await asServer(`${programs}/initdb`, ['-D', making, '-U', 'fettle', '-A', 'scram-sha-256', `--pwfile=${passwordFile}`, '-E', 'UTF8', '--locale=C.UTF-8', ...(scratch ? ['--no-sync'] : ['--data-checksums'])], { quiet: true, orStop: `PostgreSQL could not make a database in ${folder}.` })
     rmSync(passwordFile)
     state = { password, programs, port: await freePort() }
-    writeFileSync(stateFile, JSON.stringify(state), { mode: 0o600 })
+    writeWhole(stateFile, JSON.stringify(state))
     renameSync(making, data)
   }
 
@@ -67,7 +68,7 @@ export async function startCluster(folder, { scratch = false } = {}) {
   else {
     if (!(await tryPort(state.port)).free) {
       state.port = await freePort()
-      writeFileSync(stateFile, JSON.stringify(state), { mode: 0o600 })
+      writeWhole(stateFile, JSON.stringify(state))
     }
     const settings = {
       listen_addresses: '127.0.0.1', port: state.port, unix_socket_directories: '', max_connections: 100,

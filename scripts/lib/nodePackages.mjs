@@ -15,17 +15,17 @@ function upToDate() {
     .every(([path, wanted]) => path === '' || wanted.optional || wanted.peer || wanted.devOptional || there[path]?.version === wanted.version)
 }
 
-export async function ensureNodePackages() {
+export async function ensureNodePackages(signal) {
   const [major, minor] = process.versions.node.split('.').map(Number)
   if (major < 20 || (major === 20 && minor < 19)) throw new Stop(`Fettle needs Node.js 20.19 or newer; this is ${process.versions.node}.`)
   if (!upToDate()) {
     say('Installing packages (npm ci) ...')
-    await run('npm', ['ci', '--ignore-scripts', '--include=dev', '--no-audit', '--no-fund', '--loglevel=error'], { cwd: root, orStop: 'The packages could not be installed; see above. Is the npm registry reachable?' })
+    await run('npm', ['ci', '--ignore-scripts', '--include=dev', '--no-audit', '--no-fund', '--loglevel=error'], { cwd: root, signal, orStop: 'The packages could not be installed; see above. Is the npm registry reachable?' })
   }
   const hash = hashOf(['package-lock.json', 'nuxt.config.ts'])
   const stamp = `${built}/prepared`
   if (existsSync(`${root}/.nuxt/tsconfig.app.json`) && existsSync(stamp) && readFileSync(stamp, 'utf8') === hash) return
-  await run(`${root}/node_modules/.bin/nuxi`, ['prepare'], { cwd: root, quiet: true, orStop: 'Nuxt could not prepare its types; see above.' })
+  await run(`${root}/node_modules/.bin/nuxi`, ['prepare'], { cwd: root, quiet: true, signal, orStop: 'Nuxt could not prepare its types; see above.' })
   mkdirSync(built, { recursive: true })
   writeFileSync(stamp, hash)
 }

@@ -1,20 +1,27 @@
 import { spawn } from 'node:child_process'
-import { Stop } from './say.mjs'
+import { Interrupted, Stop } from './say.mjs'
 
 /**
  * Runs a program to its end and answers `{ code, output }`; `quiet` keeps its words back unless it fails.
- * `orStop` is the sentence that a failure ends with.
+ * `orStop` is the sentence that a failure ends with. With `signal` (or `apart`) the program has a process group of its own,
+ * so that Ctrl-C reaches only us; an aborted signal ends it and rejects with `Interrupted`.
+ * With `ipc` it can tell that we are gone.
  */
-export function run(program, args, { cwd, env = process.env, quiet = false, orStop, input } = {}) {
+export function run(program, args, { cwd, env = process.env, quiet = false, orStop, input, signal, apart = Boolean(signal), ipc = false } = {}) {
   return new Promise((resolve, reject) => {
-    const child = spawn(program, args, { cwd, env, stdio: [input === undefined ? 'ignore' : 'pipe', quiet ? 'pipe' : 'inherit', quiet ? 'pipe' : 'inherit'] })
+    if (signal?.aborted) return reject(new Interrupted())
+    const child = spawn(program, args, { cwd, env, detached: apart, stdio: [input === undefined ? 'ignore' : 'pipe', quiet ? 'pipe' : 'inherit', quiet ? 'pipe' : 'inherit', ...(ipc ? ['ipc'] : [])] })
+    const end = () => { try { process.kill(-child.pid, 'SIGTERM') } catch { /* it has ended */ } }
+    signal?.addEventListener('abort', end)
     let output = ''
     child.stdout?.on('data', (chunk) => { output += chunk })
     child.stderr?.on('data', (chunk) => { output += chunk })
     child.stdin?.end(input)
     child.on('error', error => orStop ? reject(new Stop(`${orStop} (${error.message})`)) : reject(error))
     child.on('close', (code) => {
-      if (code !== 0 && orStop) reject(new Stop(`${essence(output)}${orStop}`))
+      signal?.removeEventListener('abort', end)
+      if (signal?.aborted) reject(new Interrupted())
+      else if (code !== 0 && orStop) reject(new Stop(`${essence(output)}${orStop}`))
       else resolve({ code: code ?? 1, output })
     })
   })

@@ -1,4 +1,5 @@
 import { clusterFolder, ensureDatabase, startCluster } from './cluster.mjs'
+import { runningStart } from './dataFolder.mjs'
 import { ensureDebianPackages, postgresPrograms } from './debianPackages.mjs'
 import { reachDatabase } from './settings.mjs'
 
@@ -11,5 +12,6 @@ export async function withSiteDatabase(dataDir, work) {
   }
   const cluster = await startCluster(await clusterFolder(dataDir))
   try { return await work({ url: await ensureDatabase(cluster, 'fettle'), programs: cluster.programs }) }
-  finally { if (cluster.startedHere) await cluster.stop() }
+  // a start that came meanwhile uses it and stops it
+  finally { if (cluster.startedHere && !runningStart(dataDir)) await cluster.stop() }
 }
