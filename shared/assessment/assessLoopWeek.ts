@@ -108,7 +108,7 @@ export function assessLoopWeek(record: LoopRecord, setup: LoopSetup, week: WeekF
   const stick = y && u && character && !panelSilent ? stickFit(y, u, processSign, (3 * (pattern?.periodS ?? 2 * character.staySideS)) / home!.intervalS) : null
   const slip = y && u && home && stretch && !panelSilent ? slipEvents(y, home.pv.subarray(stretch.begin, stretch.end), u, processSign, noise / Math.sqrt(home.factor)) : null
   const stands = u && home && !panelSilent && prepared.n <= SHORT_SAMPLES ? standsIn(home, longestSegment(home)!, setup, processSign, noise / Math.sqrt(home.factor), step.step) : null
-  const panel = valvePanel(y, u, period, setup.type, opSpan, stick, slip, panelSilent)
+  const panel = valvePanel(y, u, period, setup.type, opSpan, stick, slip, stands, panelSilent)
   const shape = y && period !== null && period >= 4 && y.length >= 6 * period ? cycleShape(y, u, period) : null
   const halves = enough && character && character.deviation > 0 ? halfCycles(series, 0.7 * character.deviation) : null
   const upsets = enough ? recoveries(series, setup.settlingS, noise / Math.sqrt(series.factor), processSign, pvSpan) : null

@@ -4,7 +4,7 @@
  *
  * A jump is a local maximum of the step of PV (mean of `width` samples after a rise of `width` samples, less the mean before), above four robust
  * deviations of all steps, five of the noise, 2.5 quanta, and two fifths of the largest jump. Jumps that the set point makes are left out. Between two jumps lies
- * a stand. A jump counts as a slip when in the stand before it the output travelled in the direction that asks for the jump, PV did not
+ * a stand. A jump counts as a slip when in the stand before it, from its last turn on, the output travelled in the direction that asks for the jump (and did not come back by more than a quarter), PV did not
  * follow by more than two fifths of the jump, PV stood on the side from which the jump leads towards the set point, and the output moved at the jump by
  * less than two fifths of that travel. Load upsets fail: they lead away from the set point, or PV came back before the next. Where the process
  * integrates (`bends`), the same is done with PV's slope, because a stem that stands lets PV run on straight, and a slip bends it.
@@ -30,6 +30,7 @@ export interface StandsAndJumps {
 const AWAY = 0.02
 const MOST_FOLLOW = 0.4
 const MOST_KICK = 0.4
+const MOST_BACK = 0.25
 const LEAST_TRAVEL = 0.2
 
 export interface StandOptions {
@@ -101,8 +102,16 @@ export function standsAndJumps(pv: Float64Array, op: Float64Array, sp: Float64Ar
     looked++
     const side = Math.sign(d)
     const part = Math.max(1, Math.min(width + 1, length >> 2))
-    const travel = side * sign * (mean(u, end - part, end) - mean(u, from, from + part))
-    const follow = side * (mean(y, end - part, end) - mean(y, from, from + part)) / size
+    // since its last turn: before that PV may have followed
+    const asked = (i: number) => side * sign * mean(u, i, i + part)
+    let turn = from
+    for (let i = from; i + part <= end; i++) if (asked(i) < asked(turn)) turn = i
+    const reached = asked(end - part)
+    let top = reached
+    for (let i = turn; i + part <= end; i++) top = Math.max(top, asked(i))
+    const travel = reached - asked(turn)
+    if (end - turn < 2 * width + part || top - reached > MOST_BACK * travel) return
+    const follow = side * (mean(y, end - part, end) - mean(y, turn, turn + part)) / size
     const kick = side * sign * (mean(u, end + rise, end + rise + width) - mean(u, end - width, end))
     const late = Math.max(from, end - 3 * part)
     const offset = s ? side * (mean(s, late, end) - mean(centre, late, end)) / (bends ? rms : size) : NaN

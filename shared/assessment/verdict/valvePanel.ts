@@ -13,6 +13,7 @@ import { stickAndJump } from '../valve/stickAndJump'
 import { stickSlipPatterns } from '../valve/stickSlipPatterns'
 import { averageDown } from '../valve/averageDown'
 import type { SlipEvents } from './slipEvents'
+import type { StandsAndJumps } from './standsAndJumps'
 import type { StickFit } from './stickFit'
 
 export interface ValvePanel {
@@ -29,6 +30,7 @@ const ROWS = {
   patterns: { name: 'Stick-slip patterns of OP and PV', source: 'Yamashita 2006, with equiprobable symbols', domain: 'PV follows the valve without much lag (flow, fast pressure)', threshold: 'above 0.25: sticking' },
   jump: { name: 'Stand and jump', source: 'Ours, after Choudhury, Thornhill, Shah 2005', domain: 'PV follows the valve within a fraction of the period', threshold: 'both shares above 0.55: sticking' },
   slip: { name: 'Slips across the set point', source: 'Ours, after Choudhury, Thornhill, Shah 2005', domain: 'PV follows the valve within a few samples; long half-cycles', threshold: '2 or more, in at least 30 % of the long half-cycles (ours)' },
+  strokes: { name: 'Single strokes', source: 'Ours, after Choudhury, Thornhill, Shah 2005', domain: 'Short records; OP moving', threshold: '2 or more, in at least 30 % of the jumps (ours)' },
   fit: { name: 'Fit of a sticking stem', source: 'After Srinivasan and others 2005; He and others 2007', domain: 'Automatic mode, OP moving', threshold: 'explains at least 5 % more of PV than a sound stem, and half of it (ours)' },
   band: { name: 'Dead band and slip', source: 'Ours, after Choudhury, Thornhill, Shah 2005', domain: 'Signs of sticking; PV follows the valve quickly', threshold: 'a size, no limit' },
 } satisfies Record<string, Row>
@@ -37,16 +39,17 @@ const ROWS = {
  * @param pv deviation of PV on the hunting stretch, finite, length n
  * @param op same length
  * @param period samples; null: no regular oscillation was found
+ * @param strokes null where the record is not short: then the test is not in the list
  * @param withheld a reason that silences the whole panel (compressed, too slow, on-off), or null
  */
-export function valvePanel(pv: Float64Array | null, op: Float64Array | null, period: number | null, type: LoopType, opSpan: number, fit: StickFit | null, slip: SlipEvents | null, withheld: string | null): ValvePanel {
+export function valvePanel(pv: Float64Array | null, op: Float64Array | null, period: number | null, type: LoopType, opSpan: number, fit: StickFit | null, slip: SlipEvents | null, strokes: { found: StandsAndJumps, bends: boolean } | null, withheld: string | null): ValvePanel {
   const tests: ValveTest[] = []
   const values = { halfCycleShape: NaN, peakAsymmetry: NaN, standingTravel: NaN, jumpShare: NaN, stickSlip: NaN, lagAsymmetry: NaN }
   const silence = withheld ?? (!op ? 'The record has no OP.' : !pv || pv.length < 64 ? 'Too few samples in automatic.' : null)
   const add = (row: Row, value: number | null, says: ValveTest['says'], note: string) => tests.push({ ...row, value: value === null || !Number.isFinite(value) ? null : Number(value.toPrecision(4)), says, note })
   let stiction: ApparentStiction | Insufficient = { status: 'insufficient', reason: silence ?? 'No oscillation was found.' }
   if (silence || !pv || !op) {
-    for (const row of Object.values(ROWS)) add(row, null, 'withheld', silence ?? '')
+    for (const row of Object.values(ROWS)) if (row !== ROWS.strokes) add(row, null, 'withheld', silence ?? '')
     return { tests, values, stiction }
   }
   const integrating = type === 'level'
@@ -95,6 +98,12 @@ export function valvePanel(pv: Float64Array | null, op: Float64Array | null, per
     const share = r.slips / r.looked
     return [share, r.slips >= 2 && share >= 0.3 ? 'sticking' : 'undecided', `${r.slips} of ${r.looked} long half-cycles end in a jump that the output had asked for.`]
   })
+  if (strokes) {
+    run(ROWS.strokes, strokes.found.looked === 0 ? `PV made no ${strokes.bends ? 'bend' : 'jump'} that stands out of noise and upsets.` : null, () => strokes.found, (r) => {
+      const share = r.slips / r.looked
+      return [r.slips, r.slips >= 2 && share >= 0.3 ? 'sticking' : 'undecided', `${r.slips} of ${r.looked} ${strokes.bends ? 'bends of PV came after a straight run' : 'jumps of PV came after a stand'} against which OP had moved on.`]
+    })
+  }
   run(ROWS.fit, fit ? null : 'Too few samples, or OP stood still.', () => fit!, f => [f.explained - f.linear, f.explained - f.linear > 0.05 && f.explained > 0.5 ? 'sticking' : 'undecided',
     `A sticking stem explains ${percent(f.explained)} of PV's movement, a sound one ${percent(f.linear)}.`])
   run(ROWS.band, rhythm, () => deadBandSlipJump(op, pv), r => [(100 * r.stickBand) / opSpan, 'undecided', `OP travels ${((100 * r.stickBand) / opSpan).toPrecision(2)} % of span after a turn until PV answers; an upper bound.`])
