@@ -10,6 +10,7 @@ import { createProcesses } from './lib/processes.mjs'
 import { run } from './lib/run.mjs'
 import { command, Interrupted, say, Stop } from './lib/say.mjs'
 import { checkedSettings, reachDatabase } from './lib/settings.mjs'
+import { workerArguments } from './lib/workerArguments.mjs'
 
 const dev = process.argv.includes('--dev')
 
@@ -93,12 +94,12 @@ await command(async () => {
     if (!prepared.accounts) throw new Stop('There is no account to sign in with yet. Set ADMIN_EMAIL and ADMIN_PASSWORD (12 characters or more) for the first one, then start again.')
     if (prepared.demoToSeed && existsSync(`${workerFolder}/seed.mjs`)) {
       say('Making the demo plant (once) ...')
-      await run(process.execPath, [`${workerFolder}/seed.mjs`], { env, signal, ipc: true, orStop: 'The demo plant could not be made; see above. The next start tries again; DEMO=off starts without it.' })
+      await run(process.execPath, [...workerArguments, `${workerFolder}/seed.mjs`], { env, signal, ipc: true, orStop: 'The demo plant could not be made; see above. The next start tries again; DEMO=off starts without it.' })
       await run(process.execPath, [`${workerFolder}/migrate.mjs`, '--demo-seeded'], { env, quiet: true, orStop: 'The database does not answer.' })
     }
 
     goOn()
-    processes.launch('worker', process.execPath, ['--enable-source-maps', `${workerFolder}/worker.mjs`], env)
+    processes.launch('worker', process.execPath, ['--enable-source-maps', ...workerArguments, `${workerFolder}/worker.mjs`], env)
     if (dev) processes.launch('web server', `${root}/node_modules/.bin/nuxi`, ['dev', '--host', settings.HOST, '--port', String(settings.PORT)], env)
     else processes.launch('web server', process.execPath, [webEntry], env)
 
