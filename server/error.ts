@@ -15,9 +15,10 @@ export default async function errorHandler(error: H3Error, event: H3Event): Prom
   const away = isDatabaseAway(cause)
   const statusCode = away ? 503 : isRefusal ? (cause.name === 'Refusal' ? cause.statusCode! : error.statusCode) : 500
   if (statusCode === 500) console.error(`${event.method} ${event.path}:`, error.cause ?? error)
-  if (away) setResponseHeader(event, 'Retry-After', 5)
   const data = away ? { code: 'database_away' } : isRefusal ? (cause.name === 'Refusal' ? cause.data : error.data) : { code: 'server_error' }
   const message = away ? 'The database cannot be reached just now. Please try again in a moment.' : isRefusal ? (cause.name === 'Refusal' ? cause.message! : error.message) : 'Something went wrong on the server. It was written to the log.'
+  const retryAfter = away ? 5 : (data as { retryAfter?: number } | undefined)?.retryAfter
+  if (retryAfter !== undefined) setResponseHeader(event, 'Retry-After', retryAfter)
   setResponseStatus(event, statusCode)
   setResponseHeader(event, 'Content-Type', 'application/json')
   await send(event, JSON.stringify({ statusCode, statusMessage: words[statusCode] ?? 'Error', message, ...(data ? { data } : {}) }))

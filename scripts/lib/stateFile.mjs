@@ -1,4 +1,4 @@
-import { cpSync, existsSync, mkdirSync, mkdtempSync, readdirSync, readFileSync, renameSync, rmSync, writeFileSync } from 'node:fs'
+import { chmodSync, cpSync, existsSync, mkdirSync, mkdtempSync, readdirSync, readFileSync, renameSync, rmSync, writeFileSync } from 'node:fs'
 import { dirname, join, resolve } from 'node:path'
 import { postgresPrograms } from './debianPackages.mjs'
 import { root } from './paths.mjs'
@@ -33,6 +33,9 @@ export async function writeState({ url, dataDir, file, programs = postgresProgra
     const folders = FOLDERS.filter(name => existsSync(join(dataDir, name)))
     // a name of its own until it is whole: a backup that was cut short must not look like one
     const whole = `${target}.partly`
+    // accounts and plant data are for nobody else on this machine
+    writeFileSync(whole, '', { mode: 0o600 })
+    chmodSync(whole, 0o600)
     const { code, output } = await run('tar', ['-cf', whole, '-C', work, 'fettle.json', 'database.dump', '-C', dataDir, ...folders], { quiet: true })
     // 1: a file changed or went while it was read, as an upload under way does; its row says that it is not complete
     if (code > 1) throw new Stop(`The archive ${target} could not be written.\n${output}`)

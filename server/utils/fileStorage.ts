@@ -1,3 +1,4 @@
+import { mkdirSync } from 'node:fs'
 import { resolve } from 'node:path'
 import fsDriver from 'unstorage/drivers/fs-lite'
 import s3Driver from 'unstorage/drivers/s3'
@@ -13,9 +14,12 @@ let mounted = false
 export function fileStorage(): FileStorage {
   if (!mounted) {
     const e = environment()
+    const folder = resolve(e.DATA_DIR, 'attachments')
+    // the driver would make it readable for everybody on this machine
+    if (!e.FILES_S3_BUCKET) mkdirSync(folder, { recursive: true, mode: 0o700 })
     useStorage().mount('files', e.FILES_S3_BUCKET
       ? s3Driver({ bucket: e.FILES_S3_BUCKET, endpoint: e.FILES_S3_ENDPOINT!, region: e.FILES_S3_REGION, accessKeyId: e.FILES_S3_KEY!, secretAccessKey: e.FILES_S3_SECRET! })
-      : fsDriver({ base: resolve(e.DATA_DIR, 'attachments') }))
+      : fsDriver({ base: folder }))
     mounted = true
   }
   return useStorage('files') as unknown as FileStorage

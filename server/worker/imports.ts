@@ -3,7 +3,7 @@ import { resolve } from 'node:path'
 import type { Knex } from 'knex'
 import type { Environment } from '../services/environment'
 import { assessDue } from '../services/assessments/assessDue'
-import { readNextImports } from '../services/imports/readNextImports'
+import { hasUpload, readNextImports } from '../services/imports/readNextImports'
 import { tidyUploads } from '../services/imports/tidyUploads'
 import type { AssessAnswer, AssessTask } from '../threads/assess'
 import { startBells } from './bells'
@@ -20,18 +20,20 @@ export async function startImports(db: Knex, environment: Environment): Promise<
   const dataDir = resolve(environment.DATA_DIR)
   const readers = threadPool('readImport', 1)
   const assessors = threadPool('assess', threads)
+  // Away from the web server, an upload that is not here is not lost, and the files here are another site's.
+  const elsewhere = environment.EXTRA_WORKER === 'on'
   let stopping = false
   const stopped = () => stopping
   const read = (importId: number) => readers.run({ databaseUrl: environment.DATABASE_URL, importId, dataDir }) as Promise<void>
   const assess = (task: AssessTask) => assessors.run(task) as Promise<AssessAnswer>
 
-  const reading = again(() => readNextImports(db, environment.DATABASE_URL, read, stopped), stopped, 'Reading')
+  const reading = again(() => readNextImports(db, environment.DATABASE_URL, read, stopped, elsewhere ? row => hasUpload(dataDir, row) : undefined), stopped, 'Reading')
   const assessing = again(() => assessDue(db, assess, { lanes: 2, batch: threads * 4, stopped }), stopped, 'Assessment')
   const stopSweep = every(SWEEP_MS, 'Sweep', async () => {
     reading.ring()
     assessing.ring()
   })
-  const stopTidy = every(HOUR_MS, 'Uploads', () => tidyUploads(db, dataDir, new Date()))
+  const stopTidy = elsewhere ? async () => {} : every(HOUR_MS, 'Uploads', () => tidyUploads(db, dataDir, new Date()))
   const stopBells = await startBells(environment.DATABASE_URL, job => (job === 'read-imports' ? reading : assessing).ring())
   return async () => {
     stopping = true

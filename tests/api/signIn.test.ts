@@ -1,5 +1,6 @@
 import { afterAll, beforeAll, describe, expect, it } from 'vitest'
 import { startApiServer, type ApiServer } from '../setup/apiServer'
+import { startApplication } from '../setup/startApplication'
 
 let server: ApiServer
 beforeAll(async () => { server = await startApiServer() })
@@ -46,9 +47,23 @@ describe('sign-in', () => {
   it('guessing stops after ten tries with 429, also with the right password then', async () => {
     await server.db('users').insert({ email: 'target@site.example', name: 'Target', role: 'viewer', password_hash: (await server.db('users').first('password_hash')).password_hash })
     await server.db('sign_in_attempts').insert(Array.from({ length: 10 }, () => ({ email: 'email target@site.example' })))
-    expect((await server.signIn('target@site.example', server.accounts.viewer.password)).answer.status).toBe(429)
+    const { answer } = await server.signIn('target@site.example', server.accounts.viewer.password)
+    expect([answer.status, answer.headers.get('retry-after')]).toEqual([429, '900'])
     await server.db('sign_in_attempts').where('email', 'email target@site.example').update({ at: new Date(Date.now() - 16 * 60_000) })
     expect((await server.signIn('target@site.example', server.accounts.viewer.password)).answer.status).toBe(200)
+  })
+  it('what a caller says of its own network address is believed of a trusted proxy alone, and then only the word of that proxy', async () => {
+    const tired = '203.0.113.9'
+    await server.db('sign_in_attempts').insert(Array.from({ length: 100 }, () => ({ email: `network ${tired}` })))
+    const status = async (at: ApiServer, forwarded: string) => (await at.call('POST', '/api/auth/sign-in', { email: 'nobody@site.example', password: 'wrong' }, { 'x-forwarded-for': forwarded })).status
+    expect(await status(server, tired)).toBe(401)
+    const behindProxy = await startApplication({ databaseUrl: server.databaseUrl, env: { TRUST_PROXY: 'on' }, worker: false })
+    try {
+      const proxied = { ...server, call: (method: string, path: string, body?: unknown, headers?: Record<string, string>) => fetch(behindProxy.baseUrl + path, { method, body: JSON.stringify(body), headers }) } as unknown as ApiServer
+      expect(await status(proxied, `198.51.100.1, ${tired}`)).toBe(429)
+      expect(await status(proxied, `${tired}, 198.51.100.1`)).toBe(401)
+    }
+    finally { await behindProxy.stop() }
   })
   it('bad input is 422 with the fields', async () => {
     const answer = await server.call('POST', '/api/auth/sign-in', { email: '' })

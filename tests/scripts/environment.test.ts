@@ -11,6 +11,8 @@ describe('settings of the environment', () => {
     [{ PORT: 'eighty' }, /PORT/], [{ PORT: '70000' }, /PORT/], [{ DEMO: 'yes' }, /DEMO/], [{ DATABASE_URL: 'mysql://x' }, /DATABASE_URL must begin with postgres/],
     [{ SMTP_URL: 'mail.site.example' }, /SMTP_URL must begin with smtp/], [{ PUBLIC_URL: 'fettle.site.example' }, /PUBLIC_URL must begin with http/],
     [{ ADMIN_EMAIL: 'nobody' }, /ADMIN_EMAIL must be an e-mail address/], [{ ADMIN_PASSWORD: 'short' }, /ADMIN_PASSWORD must have at least 12/], [{ UPLOAD_LIMIT_BYTES: '-1' }, /UPLOAD_LIMIT_BYTES/],
+    [{ DATABASE_URL: 'postgres://user:pa#ss/word@host:port/db' }, /DATABASE_URL is no address/], [{ SMTP_URL: 'smtp://' }, /SMTP_URL is no address/], [{ SMTP_URL: 'smtp://mail:smtp' }, /SMTP_URL is no address/],
+    [{ PUBLIC_URL: 'https://' }, /PUBLIC_URL is no address/], [{ MAIL_FROM: 'Fettle' }, /MAIL_FROM must be an address/], [{ TRUST_PROXY: '10.0.0.1' }, /TRUST_PROXY/],
   ])('%j stops with a sentence that names it', (wrong, sentence) => {
     expect(() => readEnvironment({ ...url, ...wrong } as Record<string, string>)).toThrow(sentence)
   })

@@ -1,19 +1,12 @@
 import { LEDGER_STATES } from '../../../shared/assessment/types'
 import { FLEET_MEASURES, type LoopRow } from '../../../shared/types/fleet'
+import { csvCell } from '../csvCell'
 
 /** Columns of the export in the order of the contract; `hours` becomes one column per state. */
 export const CSV_COLUMNS: readonly string[] = [
   'tag', 'description', 'area', 'unit', 'type', 'priority', 'verdict', 'confidence', 'lostHours', 'weightedLostHours', 'change',
   ...LEDGER_STATES.map(state => `hours.${state}`), 'ribbon', ...FLEET_MEASURES, 'group', 'openTicket', 'setAside',
 ]
-
-function cell(value: unknown): string {
-  if (value === null || value === undefined) return ''
-  let text = String(value)
-  // a spreadsheet would run a text that begins like a formula; numbers are safe and keep their minus
-  if (typeof value === 'string' && /^[=+\-@\t\r]/.test(text)) text = `'${text}`
-  return /[",\n\r]/.test(text) ? `"${text.replace(/"/g, '""')}"` : text
-}
 
 function valueOf(row: LoopRow, column: string): unknown {
   if (column.startsWith('hours.')) return row.hours[column.slice(6) as keyof LoopRow['hours']]
@@ -28,5 +21,5 @@ function valueOf(row: LoopRow, column: string): unknown {
 export function fleetCsv(rows: LoopRow[], columns: string[] = []): string {
   const asked = columns.flatMap(name => (name === 'hours' ? LEDGER_STATES.map(state => `hours.${state}`) : [name])).filter(name => CSV_COLUMNS.includes(name) && name !== 'tag')
   const chosen = columns.length ? ['tag', ...new Set(asked)] : CSV_COLUMNS
-  return [chosen.join(','), ...rows.map(row => chosen.map(column => cell(valueOf(row, column))).join(','))].map(line => `${line}\r\n`).join('')
+  return [chosen.join(','), ...rows.map(row => chosen.map(column => csvCell(valueOf(row, column))).join(','))].map(line => `${line}\r\n`).join('')
 }

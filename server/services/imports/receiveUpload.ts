@@ -27,7 +27,7 @@ export async function findRepeatedUpload(db: Knex, upload: Pick<Upload, 'idempot
  */
 export async function receiveUpload(db: Knex, body: Readable, upload: Upload): Promise<{ id: number, status: string }> {
   const folder = join(upload.dataDir, 'uploads')
-  await mkdir(folder, { recursive: true })
+  await mkdir(folder, { recursive: true, mode: 0o700 })
   const fileKey = randomUUID()
   const path = join(folder, fileKey)
   const hash = createHash('sha256')

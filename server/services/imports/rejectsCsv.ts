@@ -1,6 +1,7 @@
 import type { RejectRow } from '../../../db/repositories/importRejects'
+import { noFormula } from '../csvCell'
 
-const quote = (text: string) => `"${text.replaceAll('"', '""')}"`
+const quote = (text: string) => `"${noFormula(text).replaceAll('"', '""')}"`
 
 /** Rejected rows and cells, in the order of the file. */
 export function rejectsCsv(rows: RejectRow[]): string {

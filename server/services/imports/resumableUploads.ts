@@ -13,12 +13,13 @@ import { recordUpload, type Sender } from './receiveUpload'
 export interface UploadPlace { dataDir: string, limitBytes: number }
 
 const partOf = (place: UploadPlace, id: string) => join(place.dataDir, 'uploads', `${id}.part`)
+const UPLOAD_ID = /^[\da-f-]{36}$/
 const busy = new Set<string>()
 
 /** `Upload-Metadata`: keys with values in base64. */
 export function readMetadata(header: string | undefined): Record<string, string> {
   return Object.fromEntries((header ?? '').split(',').map(pair => pair.trim().split(/\s+/)).filter(([key]) => key).slice(0, 30)
-    .map(([key, value]) => [key.slice(0, 60), Buffer.from(value ?? '', 'base64').toString('utf8').slice(0, 300)]))
+    .map(([key, value]) => [key.slice(0, 60), Buffer.from(value ?? '', 'base64').toString('utf8').replaceAll('\0', '').slice(0, 300)]))
 }
 
 export async function beginUpload(db: Knex, place: UploadPlace, userId: number, lengthHeader: string | undefined, metadataHeader: string | undefined): Promise<string> {
@@ -29,14 +30,14 @@ export async function beginUpload(db: Knex, place: UploadPlace, userId: number, 
   const options = importQuerySchema.safeParse(metadata)
   if (!options.success) throw new Refusal(422, 'invalid_input', options.error.issues[0].message, { issues: options.error.issues.map(i => ({ path: i.path.join('.'), message: i.message })) })
   const id = randomUUID()
-  await mkdir(join(place.dataDir, 'uploads'), { recursive: true })
+  await mkdir(join(place.dataDir, 'uploads'), { recursive: true, mode: 0o700 })
   await (await open(partOf(place, id), 'wx', 0o600)).close()
   await insertUpload(db, { id, userId, length, metadata })
   return id
 }
 
 export async function lookAtUpload(db: Knex, place: UploadPlace, userId: number, id: string): Promise<UploadRow & { offset: number }> {
-  const upload = await findUpload(db, id, userId)
+  const upload = UPLOAD_ID.test(id) ? await findUpload(db, id, userId) : null
   if (!upload) throw new Refusal(404, 'not_found', 'This upload was not found, or is not yours.')
   if (upload.importId !== null) return { ...upload, offset: upload.length }
   const size = await stat(partOf(place, id)).then(s => s.size, () => null)

@@ -171,6 +171,7 @@ function decodeText(bytes: Uint8Array): string {
 
 function readLoopList(bytes: Uint8Array): { rows: Wanted[], total: number, unknownColumns: string[], errors: RowProblem[] } {
   const text = decodeText(bytes)
+  if (text.includes('\0')) throw new Refusal(422, 'invalid_input', 'The list holds the character NUL; it is no text file, or it was damaged.', { issues: [{ path: '', message: 'holds the character NUL' }] })
   const header = text.split(/\r?\n/).find(line => line.trim() !== '') ?? ''
   const delimiter = [',', ';', '\t', '|'].reduce((best, d) => header.split(d).length > header.split(best).length ? d : best)
   let records: { record: string[], info: { lines: number } }[]

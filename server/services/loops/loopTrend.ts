@@ -6,6 +6,8 @@ import { Refusal } from '../refusal'
 import { thinTrend, type ThinTrend } from './thinTrend'
 
 const DAY_MS = 86_400_000
+/** Every sample of the span is decoded in the web process. */
+const MOST_DAYS = 100
 
 export interface TrendAnswer { t: string[], pv: (number | null)[], sp: (number | null)[], op: (number | null)[], mode: (string | null)[] }
 
@@ -20,6 +22,7 @@ export async function loopTrend(db: Database, tag: string, span: { from?: Date, 
     from ??= span.to ? to - 7 * DAY_MS : Math.max(Date.parse(stored.first), to - 7 * DAY_MS)
   }
   if (!(to > from)) throw new Refusal(422, 'invalid_input', 'The span must end after it begins.', { issues: [{ path: 'to', message: 'must be after from' }] })
+  if (to - from > MOST_DAYS * DAY_MS) throw new Refusal(422, 'invalid_input', `At most ${MOST_DAYS} days can be drawn together.`, { issues: [{ path: 'from', message: `at most ${MOST_DAYS} days before the end` }] })
   const blocks = await listBlocksOfTag(db, tag, from, to)
   if (blocks.length === 0) await idOf(db, tag)
   return toAnswer(thinTrend(decodeBlocks(blocks, from, to), span.points))

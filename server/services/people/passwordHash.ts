@@ -1,4 +1,5 @@
 import { randomBytes, scrypt, timingSafeEqual } from 'node:crypto'
+import { Refusal } from '../refusal'
 
 /** OWASP Application Security Verification Standard 5.0, appendix on password storage: scrypt with N 2^15, r 8, p 3 at least. */
 const COST = { N: 2 ** 15, r: 8, p: 3 }
@@ -13,7 +14,7 @@ const waiting: (() => void)[] = []
 
 async function derive(password: string, salt: Buffer, cost: { N: number, r: number, p: number }, bytes: number): Promise<Buffer> {
   if (working >= AT_ONCE) {
-    if (waiting.length >= QUEUE_LIMIT) throw new Error('Too many passwords are being checked at once.')
+    if (waiting.length >= QUEUE_LIMIT) throw new Refusal(503, 'busy', 'Too many passwords are being checked at once. Please try again in a moment.', { retryAfter: 5 })
     await new Promise<void>(resolve => waiting.push(resolve))
   }
   else working++

@@ -44,6 +44,8 @@ export async function changeTicket(db: Knex, actor: Actor, id: number, input: Ch
       const objection = objectionToMove(ticket.state, wants.state, { role: actor.role, isAssignee }, { assignee: assigneeId !== null, reason: Boolean(input.reason?.trim()) })
       if (objection) throw new Refusal(objection.code === 'not_allowed' ? 403 : objection.code === 'illegal_move' ? 409 : 422, objection.code, objection.message)
     }
+    // it divides before from after in the proof
+    if (wants.workDoneAt && !wants.state && !isAssignee && !atLeast(actor.role, 'engineer')) throw new Refusal(403, 'not_allowed', 'When the work was done is said by the person assigned, or an engineer.')
     const beyondState = Object.keys(wants).some(key => key !== 'state' && key !== 'workDoneAt')
     if (beyondState && !atLeast(actor.role, 'engineer')) throw new Refusal(403, 'not_allowed', 'Title, priority, due date and assignee are changed by an engineer.')
     if (wants.assigneeId) await requireAssignee(trx, wants.assigneeId)

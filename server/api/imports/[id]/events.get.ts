@@ -3,7 +3,10 @@ import { importView, isSettled } from '../../../services/imports/importView'
 
 const POLL_MS = 2000
 
-/** The import as server-sent events: at once, on every change, and for the last time when it is settled. */
+/**
+ * The import as server-sent events: at once, on every change, and for the last time when it is settled or when the
+ * caller may no longer look.
+ */
 export default defineEventHandler(async (event) => {
   await requireImportReader(event)
   const { id } = await readImportId(event)
@@ -21,7 +24,9 @@ export default defineEventHandler(async (event) => {
       if (busy) { again = true; return }
       busy = true
       try {
-        const found = await findImport(database(), id)
+        event.context.person = undefined
+        const may = await requireImportReader(event).then(() => true, error => (error as { statusCode?: number }).statusCode !== 401)
+        const found = may ? await findImport(database(), id) : null
         const text = found && JSON.stringify(importView(found))
         if (text && text !== last) res.write(`data: ${last = text}\n\n`)
         else res.write(': still here\n\n')
