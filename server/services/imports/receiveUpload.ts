@@ -12,6 +12,10 @@ import type { ImportOptions } from './importOptions'
 export interface Sender { userId: number | null, tokenId: number | null, name: string }
 export interface Upload { name: string, options: ImportOptions, idempotencyKey: string | null, sender: Sender, dataDir: string, limitBytes: number }
 
+/** Written in pieces of this size, and brought safely to disk while more comes in, so that the end has little left to wait for. */
+const WRITE_AT = 1 << 20
+const SYNC_EVERY = 16 << 20
+
 const keyOf = (u: Pick<Upload, 'idempotencyKey' | 'sender'>) => u.idempotencyKey && `${u.sender.userId ? `u${u.sender.userId}` : `t${u.sender.tokenId}`}:${u.idempotencyKey}`
 
 /** The import that an idempotency key was given to before, so that its body need not be read again. */
@@ -32,18 +36,43 @@ export async function receiveUpload(db: Knex, body: Readable, upload: Upload): P
   const path = join(folder, fileKey)
   const hash = createHash('sha256')
   let bytes = 0
+  const sync = { bytes: 0, running: null as Promise<void> | null }
   try {
     const file = await open(path, 'wx', 0o600)
     try {
+      let batch: Buffer[] = []
+      let held = 0
+      const write = async () => {
+        let { bytesWritten } = await file.writev(batch)
+        // a disk that is nearly full may take a part only
+        for (const chunk of batch) {
+          for (let at = Math.min(chunk.length, bytesWritten); at < chunk.length;) at += (await file.write(chunk, at)).bytesWritten
+          bytesWritten = Math.max(0, bytesWritten - chunk.length)
+        }
+        if ((sync.bytes += held) >= SYNC_EVERY && !sync.running) {
+          sync.bytes = 0
+          sync.running = file.datasync().then(() => { sync.running = null })
+          // thrown where it is awaited
+          sync.running.catch(() => {})
+        }
+        batch = []
+        held = 0
+      }
       for await (const chunk of body as AsyncIterable<Buffer>) {
         bytes += chunk.length
         if (bytes > upload.limitBytes) throw new Refusal(413, 'too_large', `The file is larger than ${upload.limitBytes} bytes, the limit of this site.`)
         hash.update(chunk)
-        for (let at = 0; at < chunk.length;) at += (await file.write(chunk, at)).bytesWritten
+        batch.push(chunk)
+        if ((held += chunk.length) >= WRITE_AT) await write()
       }
+      if (held > 0) await write()
+      await sync.running
       await file.sync()
     }
-    finally { await file.close() }
+    finally {
+      await sync.running?.catch(() => {})
+      await file.close()
+    }
     if (bytes === 0) throw new Refusal(422, 'invalid_input', 'The request has no body; send the file as it is.', { issues: [{ path: '', message: 'empty' }] })
     return await recordUpload(db, { ...upload, fileKey, bytes, sha256: hash.digest('hex') })
   }
