@@ -1,6 +1,7 @@
 import type { TrendBlock } from '../../db/blocks/types'
 import { loopRecord } from '../services/assessments/loopRecord'
 import { loopWeekColumns } from '../services/assessments/loopWeekColumns'
+import { rehearse } from '../services/assessments/rehearse'
 import { assessLoopWeek } from '../../shared/assessment/assessLoopWeek'
 import type { LoopSetup, TimeSpan, WeekFrame } from '../../shared/assessment/types'
 import { weekFrame } from '../../shared/assessment/week/isoWeek'
@@ -18,4 +19,9 @@ export default function assess({ setup, version, week, zone, outages, blocks }: 
   const edges = frame.hourEdges
   const assessment = assessLoopWeek(loopRecord(blocks, edges[0], edges[edges.length - 1], setup.normalModes), setup, frame, outages)
   return { columns: loopWeekColumns(assessment, { priority: setup.priority, version, weekStartMs: edges[0] }), detail: JSON.stringify(assessment).replaceAll('\\u0000', '') }
+}
+
+/** Before the first loop-week of a fresh thread, where there is time for it. */
+export function getReady(): void {
+  rehearse()
 }

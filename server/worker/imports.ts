@@ -1,6 +1,7 @@
 import { availableParallelism } from 'node:os'
 import { resolve } from 'node:path'
 import type { Knex } from 'knex'
+import type { ImportRow } from '../../db/repositories/imports'
 import type { Environment } from '../services/environment'
 import { assessDue } from '../services/assessments/assessDue'
 import { hasUpload, readNextImports } from '../services/imports/readNextImports'
@@ -13,6 +14,8 @@ import { threadPool } from './threadPool'
 /** What a killed worker or a missed bell left lies at most so long. */
 const SWEEP_MS = 5000
 const HOUR_MS = 3_600_000
+/** A file of this size keeps its reader busy for about as long as the threads need to get ready. */
+const WORTH_REHEARSING = 32 << 20
 
 /** Reads uploads and assesses loop-weeks for as long as the worker lives. Answers how to stop it. */
 export async function startImports(db: Knex, environment: Environment): Promise<() => Promise<void>> {
@@ -24,7 +27,11 @@ export async function startImports(db: Knex, environment: Environment): Promise<
   const elsewhere = environment.EXTRA_WORKER === 'on'
   let stopping = false
   const stopped = () => stopping
-  const read = (importId: number) => readers.run({ databaseUrl: environment.DATABASE_URL, importId, dataDir }) as Promise<void>
+  const read = async ({ id, bytes }: ImportRow) => {
+    // fresh threads get ready for what comes after the reading, while it keeps only one core busy
+    if (bytes >= WORTH_REHEARSING) for (let i = assessors.threads.length; i < threads; i++) assessors.run(undefined, { name: 'getReady' }).catch(() => {})
+    await readers.run({ databaseUrl: environment.DATABASE_URL, importId: id, dataDir })
+  }
   const assess = (task: AssessTask) => assessors.run(task) as Promise<AssessAnswer>
 
   const reading = again(() => readNextImports(db, environment.DATABASE_URL, read, stopped, elsewhere ? row => hasUpload(dataDir, row) : undefined), stopped, 'Reading')

@@ -18,7 +18,7 @@ const READING_LOCK = 7_340_111
  * may not be read at once. The lock lives in a connection of its own; when the worker is killed the server drops it,
  * and another worker takes the upload up from its beginning; `mayRead` tells which uploads this one leaves to others.
  */
-export async function readNextImports(db: Knex, databaseUrl: string, read: (importId: number) => Promise<void>, stopped: () => boolean, mayRead: (row: ImportRow) => Promise<boolean> = async () => true): Promise<void> {
+export async function readNextImports(db: Knex, databaseUrl: string, read: (row: ImportRow) => Promise<void>, stopped: () => boolean, mayRead: (row: ImportRow) => Promise<boolean> = async () => true): Promise<void> {
   const first = await findNextToRead(db)
   if (!first || !await mayRead(first)) return
   const holder = new pg.Client({ connectionString: databaseUrl, application_name: 'fettle-reading-lock', keepAlive: true, options: ASK_AFTER_CLIENT })
@@ -31,7 +31,7 @@ export async function readNextImports(db: Knex, databaseUrl: string, read: (impo
     while (!stopped() && !lost) {
       const next = await findNextToRead(db)
       if (!next || !await mayRead(next)) return
-      await read(next.id)
+      await read(next)
     }
   }
   finally { await holder.end().catch(() => {}) }

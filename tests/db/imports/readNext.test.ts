@@ -20,7 +20,7 @@ const statuses = () => scratch.db('imports').orderBy('id').pluck('status')
 /** A worker that looks once, and marks what it reads as done. */
 async function look(folder?: string): Promise<number[]> {
   const read: number[] = []
-  await readNextImports(scratch.db, scratch.url, async (id) => {
+  await readNextImports(scratch.db, scratch.url, async ({ id }) => {
     read.push(id)
     await scratch.db('imports').where({ id }).update({ status: 'done' })
   }, () => false, folder === undefined ? undefined : row => hasUpload(folder, row))
