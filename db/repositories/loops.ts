@@ -1,9 +1,9 @@
 import type { Database } from '../knex'
-import type { ControllerAction, ControllerForm } from '../../shared/control/types'
 import type { LoopType } from '../../shared/assessment/types'
+import type { StoredTuning } from '../../shared/tuning/storedController'
 
 /** A loop's set-up as it is stored: tuning in the controller's own form and units. null: not said, the default of the type holds. */
-export interface LoopConfig {
+export interface LoopConfig extends StoredTuning {
   description: string
   areaId: number | null
   unit: string
@@ -19,15 +19,6 @@ export interface LoopConfig {
   deadTimeS: number | null
   intervalS: number | null
   settlingS: number | null
-  form: ControllerForm
-  action: ControllerAction
-  gain: number | null
-  gainUnit: 'gain' | 'proportionalBand'
-  integralTime: number | null
-  derivativeTime: number | null
-  timeUnit: 's' | 'min' | 'repeatsPerMin'
-  filterTimeS: number | null
-  setpointWeight: number | null
   hysteresis: number | null
   upstream: string[]
   rangeGuessed: boolean

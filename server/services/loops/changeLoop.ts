@@ -6,10 +6,8 @@ import { insertTuningRecord } from '../../../db/repositories/tuningRecords'
 import type { LoopChange } from '../../../shared/schemas/loops'
 import { reassess } from '../assessments/reassess'
 import { Refusal } from '../refusal'
+import { TUNING_FIELDS, UNASSESSED_FIELDS } from './setupFields'
 
-/** These words do not enter any figure. */
-const UNASSESSED: ReadonlySet<string> = new Set(['description', 'unit', 'pvUnit', 'upstream'])
-const TUNING = ['form', 'action', 'gain', 'gainUnit', 'integralTime', 'derivativeTime', 'timeUnit', 'filterTimeS', 'setpointWeight', 'hysteresis'] as const
 
 /** Changes a loop's set-up, keeps a changed tuning in the tuning record, and has every week of the loop assessed again where that matters. */
 export async function changeLoop(db: Knex, by: { userId: number | null, name: string }, tag: string, { version, area, ...fields }: LoopChange): Promise<{ changed: string[], weeks: number }> {
@@ -26,11 +24,11 @@ export async function changeLoop(db: Knex, by: { userId: number | null, name: st
     const high = change.pvHigh === undefined ? loop.pvHigh : change.pvHigh
     if (low !== null && high !== null && low >= high) throw new Refusal(422, 'invalid_input', 'The range must rise from low to high.', { issues: [{ path: 'pvHigh', message: 'must be above the low end of the range' }] })
     await updateLoop(trx, loop.id, change)
-    if (TUNING.some(key => changed.includes(key))) {
-      const tuningOf = (source: Partial<LoopConfig>) => Object.fromEntries(TUNING.map(key => [key, (key in source ? source[key] : loop[key]) as string | number | null]))
+    if (TUNING_FIELDS.some(key => changed.includes(key))) {
+      const tuningOf = (source: Partial<LoopConfig>) => Object.fromEntries(TUNING_FIELDS.map(key => [key, (key in source ? source[key] : loop[key]) as string | number | null]))
       await insertTuningRecord(trx, { loopId: loop.id, ticketId: null, userId: by.userId, actor: by.name, kind: 'imported', tuning: tuningOf(change), reason: 'Set-up of the loop changed.', changeNumber: null })
     }
-    const weeks = changed.some(key => !UNASSESSED.has(key)) ? await reassess(trx, [loop.id], null, `set-up changed: ${changed.join(', ')}`) : 0
+    const weeks = changed.some(key => !UNASSESSED_FIELDS.has(key)) ? await reassess(trx, [loop.id], null, `set-up changed: ${changed.join(', ')}`) : 0
     await insertAudit(trx, { userId: by.userId, actor: by.name, action: 'loop.change', entity: 'loop', entityId: tag, data: Object.fromEntries(changed.map(key => [key, { from: loop[key], to: change[key] }])) })
     return { changed, weeks }
   })

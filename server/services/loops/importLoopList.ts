@@ -9,6 +9,7 @@ import { requestAssessments } from '../assessments/requestAssessments'
 import { typeOfTag } from '../imports/guessLoop'
 import { normaliseMode } from '../imports/scan/cells'
 import { Refusal } from '../refusal'
+import { TUNING_FIELDS, UNASSESSED_FIELDS } from './setupFields'
 
 export interface RowProblem { line: number, tag: string, column: string, value: string, message: string }
 export interface LoopListAnswer {
@@ -25,8 +26,6 @@ export interface LoopListAnswer {
   unrecorded: { tag: string, what: 'tuning' | 'range' }[]
 }
 
-const UNASSESSED: ReadonlySet<string> = new Set(['description', 'unit', 'pvUnit', 'upstream'])
-const TUNING = ['form', 'action', 'gain', 'gainUnit', 'integralTime', 'derivativeTime', 'timeUnit', 'filterTimeS', 'setpointWeight', 'hysteresis'] as const
 const RANGE = ['pvLow', 'pvHigh', 'opLow', 'opHigh'] as const
 const MOST_CHANGES = 2000
 
@@ -115,7 +114,7 @@ export async function importLoopList(db: Knex, bytes: Uint8Array, by: { userId: 
       }
       const change = Object.fromEntries(changed.map(key => [key, config[key]])) as Partial<LoopConfig>
       await updateLoop(trx, loop.id, change)
-      const retuned = TUNING.some(key => changed.includes(key))
+      const retuned = TUNING_FIELDS.some(key => changed.includes(key))
       // what was never said before is a first statement, not a change
       const unrecordedTuning = retuned && loop.gain !== null && !await wasRecorded(trx, loop.id)
       if (retuned) await keepTuning(trx, loop.id, { ...loop, ...change }, by, unrecordedTuning)
@@ -125,7 +124,7 @@ export async function importLoopList(db: Knex, bytes: Uint8Array, by: { userId: 
         answer.unrecorded.push({ tag: loop.tag, what: 'range' })
         await insertTuningRecord(trx, { loopId: loop.id, ticketId: null, userId: by.userId, actor: by.name, kind: 'unrecorded', tuning: Object.fromEntries(ranged.map(key => [key, change[key] as number])), reason: `The range came in changed by a loop list (before: ${ranged.map(key => `${key} ${loop[key]}`).join(', ')}); figures in per cent of span change with it.`, changeNumber: null })
       }
-      if (changed.some(key => !UNASSESSED.has(key))) assess.push(loop.id)
+      if (changed.some(key => !UNASSESSED_FIELDS.has(key))) assess.push(loop.id)
       answer.changed++
       const shown = Object.fromEntries(changed.map(key => key === 'areaId' ? ['area', { from: loop.area, to: area }] : [key, { from: loop[key], to: config[key] }]))
       if (answer.changes.length < MOST_CHANGES) answer.changes.push({ tag: loop.tag, created: false, fields: shown })
@@ -140,7 +139,7 @@ export async function importLoopList(db: Knex, bytes: Uint8Array, by: { userId: 
 }
 
 async function keepTuning(trx: Knex.Transaction, loopId: number, source: Partial<LoopConfig>, by: { userId: number | null, name: string }, unrecorded = false): Promise<void> {
-  const tuning = Object.fromEntries(TUNING.flatMap(key => source[key] === undefined ? [] : [[key, source[key] as string | number | null]]))
+  const tuning = Object.fromEntries(TUNING_FIELDS.flatMap(key => source[key] === undefined ? [] : [[key, source[key] as string | number | null]]))
   await insertTuningRecord(trx, { loopId, ticketId: null, userId: by.userId, actor: by.name, kind: unrecorded ? 'unrecorded' : 'imported', tuning, reason: unrecorded ? 'The tuning came in changed by a loop list; nobody had recorded a change.' : 'Loop list imported.', changeNumber: null })
 }
 

@@ -16,7 +16,7 @@ export interface FitOptions {
   /** How OP moves between samples; `first` when left out (a controller that runs faster than the historian samples). */
   hold?: 'zero' | 'first'
   /**
-   * What moved OP (see `findUsableStretches`); `natural` when left out, the most careful. In automatic the newest OP already
+   * What moved OP; `natural` when left out, the most careful. In automatic the newest OP already
    * holds the newest noise of PV, so dead times below one interval are not tried (with `hold: 'first'`).
    */
   excitation?: 'setpointStep' | 'manualMove' | 'natural'

@@ -1,6 +1,5 @@
 import { describe, expect, it } from 'vitest'
 import { compareModels } from '../../../shared/control/identification/compareModels'
-import { findUsableStretches } from '../../../shared/control/identification/findUsableStretches'
 import { fitModel } from '../../../shared/control/identification/fitModel'
 import { fitOnStretch } from '../../../shared/control/identification/fitOnStretch'
 import { solveSymmetric } from '../../../shared/control/identification/solveSymmetric'
@@ -111,36 +110,5 @@ describe('compareModels and fitOnStretch', () => {
     const used = best.status === 'ok' ? best : best.best!
     expect(fitOnStretch(used.model, stretches[1], interval).fitPercent).toBeGreaterThan(70)
     expect(fitOnStretch({ ...used.model, processGain: -used.model.processGain }, stretches[1], interval).fitPercent).toBeLessThan(20)
-  })
-})
-
-describe('findUsableStretches', () => {
-  const n = 3000
-  const normal = normalNumbers(11)
-  const sp = Float64Array.from({ length: n }, (_, k) => k < 500 ? 50 : 55)
-  const op = Float64Array.from({ length: n }, (_, k) => (k < 500 ? 40 : 45) + (k >= 2000 && k < 2200 ? 6 : 0) + 0.05 * normal())
-  const pv = Float64Array.from({ length: n }, (_, k) => sp[k] + 0.1 * normal())
-  const automatic = Uint8Array.from({ length: n }, (_, k) => k >= 1800 && k < 2500 ? 0 : 1)
-  const samples = { interval: 2, pv, op, sp, automatic, opLow: 0, opHigh: 100, settlingTime: 200 }
-  it('finds the OP move in manual first, then the set-point step, each with a lead-in and within its mode', () => {
-    const found = findUsableStretches(samples)
-    expect(found[0].kind).toBe('manualMove')
-    expect(found[0].from).toBe(1900)
-    expect(found[0].to).toBe(2400)
-    const step = found.find(s => s.kind === 'setpointStep')!
-    expect(step.from).toBe(400)
-    expect(step.to).toBe(700)
-    expect(step.description).toContain('1 set-point change')
-  })
-  it('cuts at gaps and finds nothing in a quiet or saturated record', () => {
-    const holed = pv.slice()
-    holed[600] = NaN
-    expect(findUsableStretches({ ...samples, pv: holed }).every(s => s.to <= 600 || s.from > 600)).toBe(true)
-    expect(findUsableStretches({ ...samples, op: new Float64Array(n).fill(100), automatic: null })).toEqual([])
-    expect(findUsableStretches({ ...samples, pv: new Float64Array(n).fill(NaN) })).toEqual([])
-  })
-  it('throws on misuse', () => {
-    expect(() => findUsableStretches({ ...samples, op: new Float64Array(5) })).toThrow('length')
-    expect(() => findUsableStretches({ ...samples, interval: 0 })).toThrow('interval')
   })
 })
