@@ -33,7 +33,7 @@ export async function windowAccuracy(options: { seeds?: number, firstSeed?: numb
   const all = [...sticking, ...sound]
   const lines: string[] = []
   const say = (...l: string[]) => lines.push(...l)
-  say(`Made by \`npm run accuracy -- --windows\`: ${results.length} simulated windows of 750 samples at 10 s that the calibration has not seen (seeds from ${firstSeed}): four conditions with a sticking valve by the three published models, twelve with a sound one, one with backlash only, each on four loop types. A quarter is recorded coarsely (few decimals, coarse transmitter, light compression). Two hours hold only four settling horizons of a temperature loop, which without a rhythm is refused as too short.`, '')
+  say(`Made by \`npm run accuracy -- --windows\`: ${results.length} simulated windows of 750 samples at 10 s that the calibration has not seen (seeds from ${firstSeed}): four conditions with a sticking valve by the three published models, twelve with a sound one, one with backlash only, each on four loop types. A quarter and more of them are recorded coarsely (few decimals, coarse transmitter, light compression). Two hours hold only four settling horizons of a temperature loop, which without a rhythm is refused as too short.`, '')
   const bare = short.filter(r => r.truth === 'huntingValve')
   say('| measure | value |', '|---|---|')
   say(`| sticking valves named, flow, pressure and level | ${percent(bare.filter(named).length, bare.length)} |`)

@@ -35,7 +35,7 @@ import { stickFit } from './verdict/stickFit'
 import { valvePanel } from './verdict/valvePanel'
 
 /** Changes whenever a figure could come out differently; stands beside every stored assessment. */
-export const METHOD_VERSION = '2026.3'
+export const METHOD_VERSION = '2026.4'
 
 export interface AssessOptions {
   /** receives what the likelihood tables look at; for calibration */

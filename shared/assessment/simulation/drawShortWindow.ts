@@ -28,7 +28,7 @@ export interface ShortWindow { setup: LoopSetup, record: LoopRecord, truth: Wind
 const INTERVAL_S = 10
 const SAMPLES = 750
 const WINDOW_S = INTERVAL_S * SAMPLES
-/** From the last one of these on a stem that has rested this many samples and moves has slipped. */
+/** A stem that moves after a rest of so many samples has slipped. */
 const REST = 6
 /** The causes that drawScenario builds whole. */
 const WHOLE: Partial<Record<WindowCondition, Cause>> = { tight: 'tightTuning', carriedIn: 'carriedIn', noisy: 'noiseDominated' }
@@ -39,8 +39,8 @@ class Redraw extends Error {}
  * A window of about two hours (750 samples at 10 s) out of a longer run, as people export when a loop troubles them: all in automatic, few events.
  * Sticking valves by the three published models, so tuned that one to six slips fall into the window, or many; and sound ones in
  * every condition that could be taken for it, above all slow loops whose PV stays off the set point while the output integrates.
- * `backlash` is neither: its valve is not sound, but does not stick. About a quarter of the windows, of any condition, are moreover
- * recorded coarsely.
+ * `backlash` is neither: its valve is not sound, but does not stick. A quarter of the windows and more, of any condition, are moreover
+ * recorded coarsely: few decimals of OP, a coarse transmitter, or a light historian compression.
  *
  * The same arguments give the same window. Mostly 20 to 200 ms. The draws of drawScenario are not touched.
  * @param seed integer 0..2^32-1
@@ -93,6 +93,10 @@ function draw(condition: WindowCondition, type: LoopType, seed: number): ShortWi
     scenario.cascade = false
     if (scenario.valve.kind === 'deadBand' && random.uniform() < 0.5) scenario.valve = { kind: 'sound' }
   }
+  // the conditions that are about recording have sound valves only: so sticking ones are recorded coarsely more often, and coarseness says nothing
+  const coarse = random.uniform() < (condition.startsWith('sticking') ? 0.4 : 0.25) ? random.integer(3) : -1
+  // a coarse transmitter is part of the loop, so it is there before strokes are counted
+  if (coarse === 0) scenario.resolution = (setup.pvHigh - setup.pvLow) * 0.0005 * 8 ** random.uniform()
   const slow = (share: number) => { if (random.uniform() < share) { slacken(draft); facts.slack = 1 } }
   const recoversLate = () => facts.slack === 1 && recoveryS(draft) > setup.settlingS
   switch (condition) {
@@ -157,7 +161,8 @@ function draw(condition: WindowCondition, type: LoopType, seed: number): ShortWi
       if (random.uniform() < 0.6) drift(draft)
       scenario.valve = { kind: 'deadBand', width: Number((0.5 * 12 ** random.uniform()).toPrecision(3)) }
   }
-  if (scenario.compression === null && random.uniform() < 0.25) recordCoarsely(draft)
+  if (coarse === 1) scenario.decimals = { ...scenario.decimals, op: random.integer(2) }
+  else if (coarse === 2 && scenario.compression === null) thin(draft)
   const record = windowOf(simulateLoop(setup, scenario).record, draft)
   return { setup, record, truth: { condition, verdict, valve: scenario.valve, slips, facts } }
 }
@@ -287,15 +292,6 @@ function thin({ random, setup, scenario }: Draft): void {
   scenario.compression = { technique, pvDeviation: deviation, opDeviation: 0.05 + 0.5 * random.uniform(), longestS: 1800, report: random.uniform() < 0.7 ? 'interpolated' : 'archived' }
 }
 
-/** Coarse transmitter, few decimals of OP, or a light compression. */
-function recordCoarsely(draft: Draft): void {
-  const { random, setup, scenario } = draft
-  const kind = random.integer(3)
-  if (kind === 0) scenario.resolution = (setup.pvHigh - setup.pvLow) * 0.0005 * 8 ** random.uniform()
-  else if (kind === 1) scenario.decimals = { ...scenario.decimals, op: random.integer(2) }
-  else thin(draft)
-}
-
 /**
  * A sticking valve on a loop whose tuning gives the wished number of slips in the window: gain and integral action are drawn
  * until the stem slips one to six times (or seven to sixty, `quick`), the jumps stand clear of the noise, and the error
@@ -321,7 +317,7 @@ function stick(draft: Draft, quick: boolean, facts: WindowTruth['facts']): numbe
     if (moved.length < (quick ? 7 : 1) || moved.length > (quick ? 60 : 6)) continue
     const sizes = moved.sort((a, b) => a - b)
     const jump = sizes[sizes.length >> 1] * gainOf(draft) * (setup.pvHigh - setup.pvLow) / 100
-    if (!integrating && scenario.process.kind !== 'furnace' && jump < 4 * scenario.noise) continue
+    if (!integrating && scenario.process.kind !== 'furnace' && jump < Math.max(4 * scenario.noise, 2 * scenario.resolution)) continue
     const sound = deviationOf(simulateLoop(setup, { ...scenario, valve: { kind: 'sound' } }).record, fromS)
     const own = deviationOf(record, fromS)
     if (own < 1.5 * sound || own < 3 * scenario.noise || saturates(record, fromS)) continue

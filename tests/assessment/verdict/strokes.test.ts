@@ -178,7 +178,7 @@ describe('drawShortWindow', () => {
 
 // The truth is what the simulator built in; the seeds are neither those of the calibration nor those of the accuracy.
 describe('verdicts on short windows', () => {
-  const run = (window: WindowCondition) => (['flow', 'pressure'] as const).flatMap(type => [0, 1, 2].flatMap(s => runCase({ cause: 'healthy', window, type, seed: 3_200_000 + s }) ?? []))
+  const run = (window: WindowCondition) => (['flow', 'pressure'] as const).flatMap(type => Array.from({ length: window.startsWith('sticking') ? 8 : 3 }, (_, s) => s).flatMap(s => runCase({ cause: 'healthy', window, type, seed: 3_200_000 + s }) ?? []))
   const results = WINDOW_CONDITIONS.flatMap(run)
   it('name most valves that slipped twice or more', () => {
     const slipped = results.filter(r => r.truth === 'huntingValve' && r.slips! >= 2)
