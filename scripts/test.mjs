@@ -36,6 +36,7 @@ await command(async () => {
   await ensureDebianPackages(['postgresql', 'chromium'])
   if (!only.length) {
     await check('lint', () => tool('eslint', '.'))
+    await check('dead code', () => tool('knip', '--no-progress', '--no-config-hints'))
     await check('types of the core', () => tool('tsc', '--noEmit', '-p', 'tsconfig.check.json'))
     await check('types of the application', () => tool('nuxi', 'typecheck'))
   }

@@ -37,11 +37,6 @@ export async function deleteDue(trx: Database, due: { loopId: number, week: stri
   await trx.raw('delete from assessments_due using unnest(?::bigint[], ?::text[]) as x (l, w) where loop_id = l and week = w', [due.map(d => d.loopId), due.map(d => d.week)])
 }
 
-export async function countDue(db: Database): Promise<number> {
-  const [{ count }] = await db('assessments_due').count()
-  return Number(count)
-}
-
 /** Locks one week whose loops are all assessed, or answers null. */
 export async function lockFinishedWeek(trx: Database): Promise<string | null> {
   const { rows } = await trx.raw(`

@@ -26,7 +26,7 @@ export async function writeState({ url, dataDir, file, programs = postgresProgra
   if (!existsSync(dirname(target))) throw new Stop(`The folder ${dirname(target)} does not exist.`)
   const work = mkdtempSync(join(dataDir, 'backup-'))
   try {
-    await run(`${programs}/pg_dump`, ['--format=custom', '--no-owner', '--no-privileges', '--file', join(work, 'database.dump'), url], { quiet: true, orStop: 'The database could not be saved; see above.' })
+    await run(`${programs}/pg_dump`, ['--format=custom', '--compress=1', '--no-owner', '--no-privileges', '--file', join(work, 'database.dump'), url], { quiet: true, orStop: 'The database could not be saved; see above.' })
     const { version } = JSON.parse(readFileSync(`${root}/package.json`, 'utf8'))
     const migrations = (await query(url, 'select name from schema_migrations order by id')).map(row => row.name)
     writeFileSync(join(work, 'fettle.json'), JSON.stringify({ format: FORMAT, version, migrations, madeAt: new Date().toISOString() }))
@@ -36,9 +36,12 @@ export async function writeState({ url, dataDir, file, programs = postgresProgra
     // accounts and plant data are for nobody else on this machine
     writeFileSync(whole, '', { mode: 0o600 })
     chmodSync(whole, 0o600)
-    const { code, output } = await run('tar', ['-cf', whole, '-C', work, 'fettle.json', 'database.dump', '-C', dataDir, ...folders], { quiet: true })
+    const { code, output } = await run('tar', ['-cf', whole, '-C', work, 'fettle.json', 'database.dump', ...(folders.length ? ['-C', dataDir, ...folders] : [])], { quiet: true })
     // 1: a file changed or went while it was read, as an upload under way does; its row says that it is not complete
-    if (code > 1) throw new Stop(`The archive ${target} could not be written.\n${output}`)
+    if (code > 1) {
+      rmSync(whole, { force: true })
+      throw new Stop(`The archive ${target} could not be written.\n${output}`)
+    }
     renameSync(whole, target)
     return target
   }
@@ -58,15 +61,20 @@ export async function readState({ url, dataDir, file, replace, programs = postgr
     const used = await query(url, 'select exists (select 1 from information_schema.tables where table_schema = \'public\') as used')
     const filesThere = FOLDERS.some(name => existsSync(join(dataDir, name)) && readdirSync(join(dataDir, name)).length)
     if ((used[0].used || filesThere) && !replace) throw new Stop('There is a site here already. Save it first if it matters, then say that it may be replaced: npm run restore -- FILE --replace')
-    // the whole file is read once before anything is dropped
-    await run(`${programs}/pg_restore`, ['--file=/dev/null', join(work, 'database.dump')], { quiet: true, orStop: `The database in ${source} is damaged; nothing was changed.` })
-    await query(url, 'drop schema if exists public cascade; drop schema if exists pgboss cascade; create schema public')
-    await run(`${programs}/pg_restore`, ['--no-owner', '--no-privileges', '--exit-on-error', '--single-transaction', '--dbname', url, join(work, 'database.dump')], { quiet: true, orStop: 'The database could not be restored; see above. It is empty now: run restore again.' })
+    // all that may fail comes first, and the database changes in one transaction: there is the old site or the new one
+    const text = join(work, 'database.sql')
+    await run(`${programs}/pg_restore`, ['--no-owner', '--no-privileges', `--file=${text}`, join(work, 'database.dump')], { quiet: true, orStop: `The database in ${source} is damaged; nothing was changed.` })
+    const empty = join(work, 'empty.sql')
+    writeFileSync(empty, 'drop schema if exists public cascade; drop schema if exists pgboss cascade; create schema public;')
+    for (const name of FOLDERS) {
+      rmSync(join(dataDir, `${name}.new`), { recursive: true, force: true })
+      mkdirSync(join(dataDir, `${name}.new`), { recursive: true, mode: 0o700 })
+      if (existsSync(join(work, name))) cpSync(join(work, name), join(dataDir, `${name}.new`), { recursive: true, preserveTimestamps: true })
+    }
+    await run(`${programs}/psql`, ['--quiet', '--no-psqlrc', '--single-transaction', '--set=ON_ERROR_STOP=1', `--file=${empty}`, `--file=${text}`, url], { quiet: true, orStop: 'The database could not be restored; nothing was changed.' })
     for (const name of FOLDERS) {
       rmSync(join(dataDir, name), { recursive: true, force: true })
-      if (!existsSync(join(work, name))) continue
-      mkdirSync(join(dataDir, name), { recursive: true })
-      cpSync(join(work, name), join(dataDir, name), { recursive: true, preserveTimestamps: true })
+      renameSync(join(dataDir, `${name}.new`), join(dataDir, name))
     }
     return about
   }

@@ -1,4 +1,4 @@
-import { existsSync, mkdirSync, mkdtempSync, readFileSync, rmSync, writeFileSync } from 'node:fs'
+import { existsSync, mkdirSync, mkdtempSync, readdirSync, readFileSync, rmSync, statSync, writeFileSync } from 'node:fs'
 import { tmpdir } from 'node:os'
 import { join } from 'node:path'
 import { afterAll, beforeAll, describe, expect, it } from 'vitest'
@@ -41,6 +41,23 @@ describe('backup and restore', () => {
     // identities go on after the highest, so that a new row does not collide
     const [{ id }] = await target.db('areas').insert({ name: 'Dryers' }).returning('id')
     expect(id).toBeGreaterThan(1)
+  })
+  it('a site without uploads and photos has a backup too, for its owner alone', async () => {
+    const bare = join(folder, 'bare')
+    mkdirSync(bare)
+    const written = await writeState({ url: source.url, dataDir: bare, file: join(folder, 'bare.tar') })
+    expect(statSync(written).mode & 0o077).toBe(0)
+    expect(readdirSync(bare)).toEqual([])
+  })
+  it('where the database cannot be replaced, everything stays as it was', async () => {
+    await target.db.raw('create schema theirs; create function theirs.never() returns event_trigger language plpgsql as $$ begin raise exception \'no tables today\'; end $$')
+    await target.db.raw('create event trigger no_tables on ddl_command_start when tag in (\'CREATE TABLE\') execute function theirs.never()')
+    try {
+      await expect(readState({ url: target.url, dataDir: to(), file: file(), replace: true })).rejects.toThrow(/nothing was changed/)
+      expect(await target.db('areas')).toHaveLength(2)
+      expect(existsSync(join(to(), 'attachments/3/valve.jpg'))).toBe(true)
+    }
+    finally { await target.db.raw('drop event trigger no_tables; drop schema theirs cascade') }
   })
   it('a site in use is not replaced unasked', async () => {
     await expect(readState({ url: target.url, dataDir: to(), file: file(), replace: false })).rejects.toThrow(/--replace/)

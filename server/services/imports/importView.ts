@@ -10,7 +10,6 @@ export function importView(i: ImportRow) {
     bytes: i.bytes, sha256: i.sha256, receivedBy: i.receivedBy, toAssess: i.toAssess, assessed: i.assessed, mapping: i.mapping,
   }
 }
-export type ImportView = ReturnType<typeof importView>
 
 /** Nothing more happens to it by itself. */
 export const isSettled = (i: { status: string }) => i.status === 'done' || i.status === 'failed'
