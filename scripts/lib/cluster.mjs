@@ -96,7 +96,8 @@ export async function startScratchCluster() {
 export async function ensureDatabase(cluster, name) {
   const { default: pg } = await import('pg')
   const client = new pg.Client({ connectionString: cluster.url('postgres') })
-  await client.connect()
+  try { await client.connect() }
+  catch (error) { throw new Stop(`The database in ${cluster.folder} does not work: ${error.message}. If it is damaged, move that folder away and bring back a backup: npm run restore -- FILE --replace`) }
   try {
     const { rowCount } = await client.query('select 1 from pg_database where datname = $1', [name])
     if (!rowCount) await client.query(`create database "${name}"`)

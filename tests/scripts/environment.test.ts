@@ -8,8 +8,8 @@ describe('settings of the environment', () => {
     expect(readEnvironment(url)).toMatchObject({ HOST: '127.0.0.1', PORT: 3000, DATA_DIR: '.data', DEMO: 'on', UPLOAD_LIMIT_BYTES: 20 * 1024 ** 3, PUBLIC_URL: 'http://127.0.0.1:3000' })
   })
   it.each([
-    [{ PORT: 'eighty' }, /PORT/], [{ PORT: '70000' }, /PORT/], [{ DEMO: 'yes' }, /DEMO/], [{ DATABASE_URL: 'mysql://x' }, /DATABASE_URL must begin with postgres/],
-    [{ SMTP_URL: 'mail.site.example' }, /SMTP_URL must begin with smtp/], [{ PUBLIC_URL: 'fettle.site.example' }, /PUBLIC_URL must begin with http/],
+    [{ PORT: 'eighty' }, /PORT must be a whole number from 1 to 65535\.$/], [{ PORT: '70000' }, /PORT must be a whole number/], [{ DEMO: 'yes' }, /DEMO must be on or off\.$/], [{ WORKER_THREADS: '0' }, /WORKER_THREADS must be a whole number from 1 to 64\.$/], [{ DATABASE_URL: 'mysql://x' }, /DATABASE_URL must begin with postgres/],
+    [{ SMTP_URL: 'mail.site.example' }, /SMTP_URL must begin with smtp:\/\/ or smtps:\/\/\.$/], [{ PUBLIC_URL: 'fettle.site.example' }, /PUBLIC_URL must begin with http/],
     [{ ADMIN_EMAIL: 'nobody' }, /ADMIN_EMAIL must be an e-mail address/], [{ ADMIN_PASSWORD: 'short' }, /ADMIN_PASSWORD must have at least 12/], [{ UPLOAD_LIMIT_BYTES: '-1' }, /UPLOAD_LIMIT_BYTES/],
     [{ DATABASE_URL: 'postgres://user:pa#ss/word@host:port/db' }, /DATABASE_URL is no address/], [{ SMTP_URL: 'smtp://' }, /SMTP_URL is no address/], [{ SMTP_URL: 'smtp://mail:smtp' }, /SMTP_URL is no address/],
     [{ PUBLIC_URL: 'https://' }, /PUBLIC_URL is no address/], [{ MAIL_FROM: 'Fettle' }, /MAIL_FROM must be an address/], [{ TRUST_PROXY: '10.0.0.1' }, /TRUST_PROXY/],
