@@ -6,8 +6,9 @@ interface EvidenceText { measure: string, source: string, text: (x: number) => s
 const ours = 'Ours, see the methods'
 const runs = 'After He and others 2007; Srinivasan and others 2005'
 const slips = 'Ours, after Choudhury, Thornhill, Shah 2005'
-const times = (x: number, digits = 2) => Number(x.toPrecision(digits)).toString()
-const percent = (x: number) => `${Math.round(100 * x)} %`
+const withMinus = (x: number) => x.toString().replace('-', '−')
+const times = (x: number, digits = 2) => withMinus(Number(x.toPrecision(digits)))
+const percent = (x: number) => `${withMinus(Math.round(100 * x))} %`
 
 export const EVIDENCE_TEXTS: Readonly<Record<FeatureName, EvidenceText>> = {
   huntingShare: { measure: 'Time oscillating', source: 'Thornhill, Huang, Zhang 2003', text: x => x > 0 ? `It oscillates in ${percent(Math.min(1, x))} of the usable time.` : 'No regular oscillation was found.' },
@@ -17,8 +18,8 @@ export const EVIDENCE_TEXTS: Readonly<Record<FeatureName, EvidenceText>> = {
   amplitudeVariation: { measure: 'Steadiness of the amplitude', source: 'Ours; noise through a resonance gives 52 %', text: x => `The amplitude varies by ${percent(x)} from cycle to cycle.` },
   periodVariation: { measure: 'Steadiness of the period', source: ours, text: x => `The period varies by ${percent(x)} from cycle to cycle.` },
   phaseWander: { measure: 'Beat over many cycles', source: ours, text: x => `Over 20 cycles the beat strays by ${percent(x)} of a period.` },
-  pvThird: { measure: 'Wave form of PV', source: 'Fourier series: square +33 %, triangle -11 %', text: x => `PV's third harmonic, in step, is ${percent(x)} of the first: ${x > 0.08 ? 'square-like' : x < -0.04 ? 'triangle-like' : 'near a sine'}.` },
-  opThird: { measure: 'Wave form of OP', source: 'Fourier series: square +33 %, triangle -11 %', text: x => `OP's third harmonic, in step, is ${percent(x)} of the first: ${x > 0.08 ? 'square-like' : x < -0.04 ? 'triangle-like' : 'near a sine'}.` },
+  pvThird: { measure: 'Wave form of PV', source: 'Fourier series: square +33 %, triangle −11 %', text: x => `PV's third harmonic, in step, is ${percent(x)} of the first: ${x > 0.08 ? 'square-like' : x < -0.04 ? 'triangle-like' : 'near a sine'}.` },
+  opThird: { measure: 'Wave form of OP', source: 'Fourier series: square +33 %, triangle −11 %', text: x => `OP's third harmonic, in step, is ${percent(x)} of the first: ${x > 0.08 ? 'square-like' : x < -0.04 ? 'triangle-like' : 'near a sine'}.` },
   pvOdd: { measure: 'Odd harmonics of PV', source: 'Fourier series', text: x => `Odd harmonics of PV are ${percent(x)} of the swing.` },
   pvEven: { measure: 'Even harmonics of PV', source: 'Fourier series', text: x => `Even harmonics of PV are ${percent(x)} of the swing.` },
   pvCoherence: { measure: 'Likeness of the cycles', source: ours, text: x => `The mean cycle explains ${percent(x)} of PV's movement within the cycles.` },
@@ -46,7 +47,7 @@ export const EVIDENCE_TEXTS: Readonly<Record<FeatureName, EvidenceText>> = {
   recoveryOverSettling: { measure: 'Recovery time', source: 'Common practice, no source', text: x => `An upset is worked off in ${times(x)} settling horizons.` },
   swingBack: { measure: 'Swing back after upsets', source: ours, text: x => `After an upset the error swings back by ${percent(x)} of its peak.` },
   idleIndex: { measure: 'Idle index', source: 'Hägglund 1999, cut at 5 % of the peak', text: x => `The idle index of the recoveries is ${times(x)}; near 1 is sluggish.` },
-  whiteness: { measure: 'Likeness of the error to noise', source: 'Definition (1 - lag-1 autocorrelation)', text: x => `1 less the lag-1 autocorrelation is ${times(x)}; noise alone gives 1.` },
+  whiteness: { measure: 'Likeness of the error to noise', source: 'Definition (1 − lag-1 autocorrelation)', text: x => `1 less the lag-1 autocorrelation is ${times(x)}; noise alone gives 1.` },
   kurtosis: { measure: 'Distribution of the error', source: 'Definition (kurtosis: sine 1.5, normal 3)', text: x => `The error's kurtosis is ${times(x)}: ${x < 2.3 ? 'a steady swing' : x < 4 ? 'near normal' : 'rare large upsets'}.` },
   deviationOverTolerance: { measure: 'Size of the error', source: 'Definition', text: x => `The error's standard deviation is ${times(x)} times the tolerance.` },
   noiseOverTolerance: { measure: 'Size of the noise', source: ours, text: x => `The noise of PV is ${times(x)} times the tolerance.` },

@@ -152,7 +152,7 @@ describe('second table', () => {
       expect(f.counts.flat().reduce((a, b) => a + b, 0)).toBe(SLIP_TABLE.training.windows)
     }
     expect(SLIP_TABLE.training.windows).toBeGreaterThan(1000)
-    for (const f of SHORT_FEATURES) for (const x of [0.4, -0.4]) expect(EVIDENCE_TEXTS[f].text(x)).toMatch(/^[A-Z0-9-].*\.$/)
+    for (const f of SHORT_FEATURES) for (const x of [0.4, -0.4]) expect(EVIDENCE_TEXTS[f].text(x)).toMatch(/^[A-Z0-9−].*\.$/)
   })
 })
 
