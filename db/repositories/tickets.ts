@@ -1,32 +1,13 @@
 import type { Knex } from 'knex'
 import type { Database } from '../knex'
-import type { KeptEvidence, Outcome, TicketChecks, TicketProof, TicketState } from '../../shared/types/tickets'
+import type { KeptEvidence, TicketFacts, TicketState } from '../../shared/types/tickets'
 
-export interface TicketRow {
-  id: number
-  title: string
-  state: TicketState
-  priority: 1 | 2 | 3
-  dueOn: string | null
-  assigneeId: number | null
-  assignee: string | null
-  openedBy: number | null
-  opener: string | null
+export interface TicketRow extends TicketFacts {
   groupId: number | null
-  followUpOf: number | null
-  week: string
-  evidence: KeptEvidence[]
-  /** by tag, then by check: the answers, with `at` and `by` */
-  checks: TicketChecks
-  outcome: Outcome | null
-  closeReason: string | null
-  proof: TicketProof | null
-  proofFinal: boolean
   proofFinalAt: Date | null
   workDoneAt: Date | null
   closedAt: Date | null
   closedBy: number | null
-  version: number
   createdAt: Date
   updatedAt: Date
   loops: { id: number, tag: string, description: string, area: string | null }[]

@@ -107,8 +107,8 @@ export type TuningValues = Record<string, string | number | null>
 export interface TicketLoopView { id: number, tag: string, description: string, area: string | null, unit: string, pvUnit: string, checks: FieldCheck[], tuning: TuningValues | null }
 export interface TicketTuningView { id: number, tag: string, at: string, actor: string, kind: 'asFound' | 'asLeft' | 'imported' | 'unrecorded', tuning: TuningValues, reason: string, changeNumber: string | null }
 
-/** A ticket as its page gets it. */
-export interface TicketView {
+/** What stands about a ticket, the same in the database and on its page. */
+export interface TicketFacts {
   id: number
   title: string
   state: TicketState
@@ -119,7 +119,6 @@ export interface TicketView {
   openedBy: number | null
   opener: string | null
   followUpOf: number | null
-  followUps: number[]
   week: string
   evidence: KeptEvidence[]
   checks: TicketChecks
@@ -127,9 +126,14 @@ export interface TicketView {
   closeReason: string | null
   proof: TicketProof | null
   proofFinal: boolean
+  version: number
+}
+
+/** A ticket as its page gets it. */
+export interface TicketView extends TicketFacts {
+  followUps: number[]
   workDoneAt: string | null
   closedAt: string | null
-  version: number
   createdAt: string
   updatedAt: string
   loops: TicketLoopView[]
