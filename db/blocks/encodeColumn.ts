@@ -10,6 +10,8 @@ const MAX_DECIMALS = 9
 const LARGEST_INTEGER = 2 ** 50
 const POWERS = Array.from({ length: MAX_DECIMALS + 1 }, (_, d) => 10 ** d)
 const scratch = new ByteBuffer()
+/** The scaled values of the column at hand; NaN where a value is missing or no short decimal. */
+let whole = new Float64Array(1 << 14)
 
 /**
  * Encodes values[from..to) as one segment, without loss: decoding gives the same numbers (only -0 becomes 0).
@@ -48,20 +50,33 @@ export function encodeColumn(values: Float64Array, from = 0, to = values.length)
 
   // Once the decimals of a value are known they never shrink: a number that is short at d decimals is short at d + 1.
   let decimals = 0
+  let power = 1
   let odd = 0
-  for (let i = from; i < to; i++) {
+  if (whole.length < n) whole = new Float64Array(n)
+  for (let i = from, k = 0; i < to; i++, k++) {
     const value = values[i]
+    const scaled = Math.round(value * power)
+    if (scaled / power === value && scaled < LARGEST_INTEGER && scaled > -LARGEST_INTEGER) {
+      whole[k] = scaled
+      continue
+    }
+    whole[k] = NaN
     if (value !== value) continue
-    let scaled = Math.round(value * POWERS[decimals])
-    if (scaled / POWERS[decimals] === value && scaled < LARGEST_INTEGER && scaled > -LARGEST_INTEGER) continue
     let d = decimals
     let fits = false
     while (!fits && ++d <= MAX_DECIMALS) {
-      scaled = Math.round(value * POWERS[d])
-      fits = scaled / POWERS[d] === value && Math.abs(scaled) < LARGEST_INTEGER
+      const longer = Math.round(value * POWERS[d])
+      fits = longer / POWERS[d] === value && Math.abs(longer) < LARGEST_INTEGER
     }
-    if (fits) decimals = d
-    else odd++
+    if (fits) {
+      // what came before is scaled anew
+      decimals = d
+      power = POWERS[d]
+      i = from - 1
+      k = -1
+      odd = 0
+    }
+    else { odd++ }
   }
   if (odd * 8 > n) {
     out.byte(COLUMN_RAW)
@@ -71,7 +86,6 @@ export function encodeColumn(values: Float64Array, from = 0, to = values.length)
     return out.copy()
   }
 
-  const power = POWERS[decimals]
   out.byte(COLUMN_SCALED)
   out.varint(n)
   out.byte(decimals)
@@ -79,14 +93,14 @@ export function encodeColumn(values: Float64Array, from = 0, to = values.length)
   let bytes = out.bytes
   let at = out.length
   let before = 0
-  for (let i = from; i < to; i++) {
-    const value = values[i]
-    if (value !== value) {
-      bytes[at++] = 0
-      continue
-    }
-    const scaled = Math.round(value * power)
-    if (scaled / power !== value || scaled >= LARGEST_INTEGER || scaled <= -LARGEST_INTEGER) {
+  for (let i = from, k = 0; i < to; i++, k++) {
+    const scaled = whole[k]
+    if (scaled !== scaled) {
+      const value = values[i]
+      if (value !== value) {
+        bytes[at++] = 0
+        continue
+      }
       bytes[at++] = 1
       out.length = at
       out.float64(value)
