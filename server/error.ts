@@ -1,7 +1,7 @@
 import type { H3Error, H3Event } from 'h3'
 import { send, setResponseHeader, setResponseStatus } from 'h3'
 
-const words: Record<number, string> = { 400: 'Bad Request', 401: 'Unauthorized', 403: 'Forbidden', 404: 'Not Found', 405: 'Method Not Allowed', 409: 'Conflict', 413: 'Content Too Large', 415: 'Unsupported Media Type', 422: 'Unprocessable Content', 429: 'Too Many Requests', 500: 'Internal Server Error', 503: 'Service Unavailable' }
+const words: Record<number, string> = { 400: 'Bad Request', 401: 'Unauthorized', 403: 'Forbidden', 404: 'Not Found', 405: 'Method Not Allowed', 409: 'Conflict', 412: 'Precondition Failed', 413: 'Content Too Large', 415: 'Unsupported Media Type', 422: 'Unprocessable Content', 423: 'Locked', 429: 'Too Many Requests', 500: 'Internal Server Error', 503: 'Service Unavailable' }
 
 /** PostgreSQL is away: refused connections, its own shut-down and start-up codes, an exhausted pool. */
 function isDatabaseAway(error: { code?: string, name?: string } | undefined): boolean {
