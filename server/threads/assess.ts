@@ -22,6 +22,6 @@ export default function assess({ setup, version, week, zone, outages, blocks }: 
 }
 
 /** Before the first loop-week of a fresh thread, where there is time for it. */
-export function getReady(): void {
-  rehearse()
+export function getReady(rounds: number): void {
+  rehearse(rounds)
 }

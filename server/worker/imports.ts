@@ -14,6 +14,8 @@ import { threadPool } from './threadPool'
 /** What a killed worker or a missed bell left lies at most so long. */
 const SWEEP_MS = 5000
 const HOUR_MS = 3_600_000
+/** A worker that was just started has better to do than to rehearse; later it mostly waits. */
+const QUIET_AFTER_MS = 10_000
 /** A file of this size keeps its reader busy for about as long as the threads need to get ready. */
 const WORTH_REHEARSING = 32 << 20
 
@@ -21,15 +23,22 @@ const WORTH_REHEARSING = 32 << 20
 export async function startImports(db: Knex, environment: Environment): Promise<() => Promise<void>> {
   const threads = environment.WORKER_THREADS ?? availableParallelism()
   const dataDir = resolve(environment.DATA_DIR)
-  const readers = threadPool('readImport', 1)
-  const assessors = threadPool('assess', threads)
+  const readers = threadPool('readImport', 1, 1)
+  const assessors = threadPool('assess', threads, threads)
   // Away from the web server, an upload that is not here is not lost, and the files here are another site's.
   const elsewhere = environment.EXTRA_WORKER === 'on'
   let stopping = false
   const stopped = () => stopping
+  let ready = false
+  const getReady = (rounds: number) => {
+    if (ready) return
+    ready = true
+    for (let i = 0; i < threads; i++) assessors.run(rounds, { name: 'getReady' }).catch(() => {})
+  }
+  const idle = setTimeout(() => getReady(5), QUIET_AFTER_MS)
   const read = async ({ id, bytes }: ImportRow) => {
-    // fresh threads get ready for what comes after the reading, while it keeps only one core busy
-    if (bytes >= WORTH_REHEARSING) for (let i = assessors.threads.length; i < threads; i++) assessors.run(undefined, { name: 'getReady' }).catch(() => {})
+    // for what comes after the reading, which keeps only one core busy
+    if (bytes >= WORTH_REHEARSING) getReady(2)
     await readers.run({ databaseUrl: environment.DATABASE_URL, importId: id, dataDir })
   }
   const assess = (task: AssessTask) => assessors.run(task) as Promise<AssessAnswer>
@@ -44,6 +53,7 @@ export async function startImports(db: Knex, environment: Environment): Promise<
   const stopBells = await startBells(environment.DATABASE_URL, job => (job === 'read-imports' ? reading : assessing).ring())
   return async () => {
     stopping = true
+    clearTimeout(idle)
     await Promise.all([stopSweep(), stopTidy(), stopBells()])
     // a long reading is cut off: its transaction rolls back and it is read again at the next start
     await readers.destroy()

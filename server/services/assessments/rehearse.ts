@@ -11,7 +11,7 @@ const TYPES: LoopType[] = ['flow', 'level', 'temperature', 'pressure']
  * Assesses made-up loops and throws the answers away. The first loop-weeks in a fresh thread take ten times as long as later
  * ones, because the program is compiled while it runs; done while a file is still being read, that time costs nobody anything.
  */
-export function rehearse(rounds = 2): void {
+export function rehearse(rounds: number): void {
   const random = seededRandom(1)
   const frame = weekFrame('2024-W02', 'UTC')
   for (let k = 0; k < rounds * TYPES.length; k++) {
