@@ -1,9 +1,7 @@
 import { describe, expect, it } from 'vitest'
 import { areaIndex } from '../../../shared/assessment/response/areaIndex'
-import { errorDecay } from '../../../shared/assessment/response/errorDecay'
 import { idleIndex } from '../../../shared/assessment/response/idleIndex'
 import { loadStepRecoveries } from '../../../shared/assessment/response/loadStepRecoveries'
-import { noiseShare } from '../../../shared/assessment/response/noiseShare'
 import { findSetpointResponses } from '../../../shared/assessment/response/setpointResponses'
 import { untilSettled } from '../../../shared/assessment/response/untilSettled'
 import { seededRandom } from '../../../shared/assessment/statistics/seededRandom'
@@ -117,31 +115,6 @@ describe('set-point responses, closed forms of a second-order loop (textbook)', 
   })
 })
 
-describe('decay of the error and share of noise', () => {
-  const process = (a: number, length = 40_000) => { const random = seededRandom(2); let x = 0; return Float64Array.from({ length }, () => (x = a * x + random.normal())) }
-  it('first-order autoregression: 1 / e after its time constant (closed form)', () => {
-    const decay = told(errorDecay(process(Math.exp(-1 / 50)), { sampleIntervalS: 2, settlingS: 400 }))
-    expect(Math.abs(decay.decayTimeS / 100 - 1)).toBeLessThan(0.15)
-    expect(decay.ratio).toBeCloseTo(decay.decayTimeS / 400, 12)
-    expect(Math.abs(decay.atHorizon)).toBeLessThan(0.1)
-  })
-  it('white noise: 1 - bandwidth over half the sampling rate (closed form)', () => {
-    const share = told(noiseShare(process(0), { sampleIntervalS: 1, settlingS: 20 }))
-    expect(share).toBeCloseTo(1 - 4 / (2 * Math.PI * 20) / 0.5, 1.5)
-    expect(told(noiseShare(process(0.999), { sampleIntervalS: 1, settlingS: 20 }))).toBeLessThan(0.1)
-    expect(told(noiseShare(process(0).map(v => 7 - 30 * v), { sampleIntervalS: 1, settlingS: 20 }))).toBeCloseTo(share, 9)
-  })
-  it('cannot tell on short, still or slowly sampled records; refuses wrong options', () => {
-    expect(isInsufficient(errorDecay(process(0, 100), { sampleIntervalS: 1, settlingS: 50 }))).toBe(true)
-    expect(isInsufficient(errorDecay(new Float64Array(1000), { sampleIntervalS: 1, settlingS: 50 }))).toBe(true)
-    expect(isInsufficient(noiseShare(process(0, 100), { sampleIntervalS: 1, settlingS: 50 }))).toBe(true)
-    expect(isInsufficient(noiseShare(process(0, 1000), { sampleIntervalS: 10, settlingS: 20 }))).toBe(true)
-    expect(isInsufficient(noiseShare(new Float64Array(1000), { sampleIntervalS: 1, settlingS: 20 }))).toBe(true)
-    expect(() => errorDecay(process(0, 100), { sampleIntervalS: 0, settlingS: 50 })).toThrow(/sampleIntervalS/)
-    expect(() => noiseShare(process(0, 100), { sampleIntervalS: 1, settlingS: -1 })).toThrow(/settlingS/)
-  })
-})
-
 describe('recoveries after load steps', () => {
   const error = Float64Array.from({ length: 3000 }, (_, k) => (k < 500 ? 0 : 8 * Math.exp(-(k - 500) / 200)))
   it('closed form: an exponential is down to a tenth after 2.303 time constants; slow against 100 s, not against 1000 s', () => {
@@ -177,7 +150,6 @@ describe('misuse and inputs left alone', () => {
     const before = [op!.slice(), pv!.slice()]
     idleIndex(op!, pv!); areaIndex(op!, { sampleIntervalS: 0.1 }); untilSettled(pv!)
     findSetpointResponses(op!, pv!, { sampleIntervalS: 0.1, settlingS: 20, noiseLevel: 0 })
-    errorDecay(pv!, { sampleIntervalS: 0.1, settlingS: 10 })
     expect([op, pv]).toEqual(before)
   })
 })

@@ -1,17 +1,13 @@
 import { describe, expect, it } from 'vitest'
 import { seededRandom } from '../../../shared/assessment/statistics/seededRandom'
 import { isInsufficient } from '../../../shared/assessment/types'
-import { amplitudeConstancy } from '../../../shared/assessment/valve/amplitudeConstancy'
 import { apparentStiction } from '../../../shared/assessment/valve/apparentStiction'
 import { averageDown } from '../../../shared/assessment/valve/averageDown'
 import { cycles } from '../../../shared/assessment/valve/cycles'
 import { deadBandSlipJump } from '../../../shared/assessment/valve/deadBandSlipJump'
-import { harmonics } from '../../../shared/assessment/valve/harmonics'
-import { lineWidth } from '../../../shared/assessment/valve/lineWidth'
 import { createDeadBand } from '../../../shared/assessment/valve/models/deadBand'
 import { createKanoStiction } from '../../../shared/assessment/valve/models/kanoStiction'
 import { outputTurns } from '../../../shared/assessment/valve/outputTurns'
-import { resonanceFeatures } from '../../../shared/assessment/valve/resonanceFeatures'
 import { stickAndJump } from '../../../shared/assessment/valve/stickAndJump'
 
 const told = <T>(result: T | { status: 'insufficient', reason: string }): T => {
@@ -31,48 +27,6 @@ function resonance(damping: number, period: number, seed: number, length = 20_00
   return signal(length, (_k, normal) => { const next = c * one - r * r * two + normal(); two = one; one = next; return next }, seed)
 }
 const flat = new Float64Array(2000)
-
-describe('harmonics and constancy', () => {
-  it('closed form: square 4 / (pi n), triangle 8 / (pi n)^2, sine none (Fourier series)', () => {
-    const square = told(harmonics(signal(8000, k => Math.sign(sine(k + 0.5, 400))), 400))
-    for (const n of [1, 3, 5]) expect(square.amplitudes[n - 1]).toBeCloseTo(4 / (Math.PI * n), 1)
-    expect(square.oddShare).toBeCloseTo(1 / 9 + 1 / 25 + 1 / 49, 1)
-    expect(square.evenShare).toBeLessThan(1e-3)
-    const three = told(harmonics(signal(8000, k => triangle(k, 400)), 400))
-    expect(three.oddShare).toBeCloseTo(1 / 81 + 1 / 625 + 1 / 2401, 3)
-    expect(told(harmonics(signal(8000, k => sine(k, 400)), 400)).oddShare).toBeLessThan(1e-4)
-  })
-  it('noise does not pass for harmonics', () => {
-    expect(told(harmonics(signal(8000, (k, normal) => sine(k, 40) + 0.5 * normal()), 40)).oddShare).toBeLessThan(0.01)
-  })
-  it('a line keeps its amplitude; noise through a resonance has the variation of a Rayleigh distribution, sqrt(4 / pi - 1)', () => {
-    expect(told(amplitudeConstancy(signal(8000, k => sine(k, 40)), 40)).amplitudeVariation).toBeLessThan(0.02)
-    expect(told(amplitudeConstancy(resonance(0.03, 40, 3), 40)).amplitudeVariation).toBeCloseTo(Math.sqrt(4 / Math.PI - 1), 1)
-  })
-  it('a wandering period shows in the period, not in the amplitude', () => {
-    let phase = 0
-    const x = signal(8000, k => { phase += 2 * Math.PI / (40 * (1 + 0.15 * sine(k, 900))); return Math.sin(phase) })
-    const { amplitudeVariation, periodVariation } = told(amplitudeConstancy(x, 40))
-    expect(amplitudeVariation).toBeLessThan(0.05)
-    expect(periodVariation).toBeGreaterThan(0.06)
-  })
-})
-
-describe('width of the peak and damping, on resonances of known damping', () => {
-  for (const damping of [0.02, 0.05, 0.1]) {
-    it(`damping ${damping}`, () => {
-      const x = resonance(damping, 40, 5)
-      const width = told(lineWidth(x, 40)), features = told(resonanceFeatures(x, 40))
-      expect(width.relativeWidth / (2 * damping)).toBeGreaterThan(0.5)
-      expect(width.relativeWidth / (2 * damping)).toBeLessThan(2)
-      expect(Math.abs(features.damping / damping - 1)).toBeLessThan(0.35)
-      expect(Math.abs(features.periodSamples / 40 - 1)).toBeLessThan(0.05)
-    })
-  }
-  it('a line in noise has no width', () => {
-    expect(told(lineWidth(signal(20_000, (k, normal) => sine(k, 40) + 0.5 * normal()), 40))).toMatchObject({ atLimit: true, relativeWidth: 0 })
-  })
-})
 
 describe('loop of process variable over output', () => {
   const op = signal(6000, k => 50 + 8 * sine(k, 120))
@@ -114,15 +68,13 @@ describe('loop of process variable over output', () => {
 describe('degenerate, misuse, inputs left alone', () => {
   it('cannot tell on signals that stand still or are too short', () => {
     for (const x of [flat, flat.subarray(0, 50)]) {
-      for (const result of [harmonics(x, 40), amplitudeConstancy(x, 40), apparentStiction(x, x, { periodSamples: 40, opSpan: 100 }), stickAndJump(x, x), deadBandSlipJump(x, x), resonanceFeatures(x, 40), lineWidth(x, 40)]) expect(isInsufficient(result)).toBe(true)
+      for (const result of [apparentStiction(x, x, { periodSamples: 40, opSpan: 100 }), stickAndJump(x, x), deadBandSlipJump(x, x)]) expect(isInsufficient(result)).toBe(true)
     }
     expect(cycles(new Float64Array(10), 40)).toEqual([])
     expect(outputTurns(flat)).toHaveLength(0)
   })
   it('refuses what cannot be meant', () => {
     expect(() => cycles(flat, 3)).toThrow(/periodSamples/)
-    expect(() => lineWidth(flat, 1)).toThrow(/periodSamples/)
-    expect(() => resonanceFeatures(flat, 1)).toThrow(/periodSamples/)
     expect(() => apparentStiction(flat, flat.subarray(1), { periodSamples: 40, opSpan: 100 })).toThrow(/one length/)
     expect(() => apparentStiction(flat, flat, { periodSamples: 40, opSpan: 0 })).toThrow(/opSpan/)
     expect(() => stickAndJump(flat, flat.subarray(1))).toThrow(/one length/)
@@ -134,7 +86,7 @@ describe('degenerate, misuse, inputs left alone', () => {
   })
   it('leaves inputs alone', () => {
     const x = resonance(0.1, 40, 1, 2000), before = x.slice()
-    harmonics(x, 40); lineWidth(x, 40); resonanceFeatures(x, 40); stickAndJump(x, x); deadBandSlipJump(x, x); apparentStiction(x, x, { periodSamples: 40, opSpan: 1 })
+    stickAndJump(x, x); deadBandSlipJump(x, x); apparentStiction(x, x, { periodSamples: 40, opSpan: 1 })
     expect(x).toEqual(before)
   })
 })
