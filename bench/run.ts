@@ -41,7 +41,7 @@ finally {
 async function main(): Promise<void> {
   if (runs('reading')) await reading()
   if (runs('numerics')) await numerics(args.quick ? 3 : 9)
-  if (!['storing', 'upload', 'drawing', 'linearity', 'workers', 'memory', 'fleet'].some(runs)) return
+  if (!['storing', 'upload', 'drawing', 'linearity', 'workers', 'memory', 'fleet', 'large'].some(runs)) return
   const cluster = await startCluster(clusterFolder)
   try {
     const admin = openDatabase(cluster.url('postgres'), { poolSize: 1 })
@@ -55,6 +55,8 @@ async function main(): Promise<void> {
       if (runs('workers')) await workers(plant)
       if (runs('memory')) await memory(plant)
       if (runs('fleet')) await fleet(plant)
+      // ten minutes and 7 GB of disk: only when asked for
+      if (wanted?.includes('large')) await large(plant)
     }
     finally { await plant.stop() }
   }
@@ -236,6 +238,20 @@ async function workers(plant: Plant): Promise<void> {
   }
   const [two, single] = await alternate(Math.min(TIMES, 3), one(2), one(1))
   report('two worker processes against one', single / two, `${n} loop-weeks assessed, one thread each: ${(two / 1000).toFixed(1)} s against ${(single / 1000).toFixed(1)} s`, { least: 1.4 }, { two, single })
+}
+
+/** 500 loops at 1 s: a week in one file, against the memory that a worker may take. */
+async function large(plant: Plant): Promise<void> {
+  await plant.clear()
+  const path = file('large.csv')
+  await makeExport({ path, loops: 500, days: args.quick ? 0.1 : 7, intervalS: 1, layout: 'wide', seed: 2 })
+  await plant.startWorkers(1)
+  const started = performance.now()
+  const row = await plant.done(await plant.send(path))
+  const peak = peakMb(plant.workers[0])
+  report('a week of 500 loops at 1 s', peak / 2048, `${(statSync(path).size / 1e9).toFixed(1)} GB, ${Math.round(row.samples / 1e6)} M values in ${((performance.now() - started) / 1000).toFixed(0)} s; memory of the worker ${peak.toFixed(0)} MB at the peak against 2048 MB`, { under: 1 }, { peak })
+  await plant.stopWorkers()
+  rmSync(path)
 }
 
 /** Memory of the web process while a large file comes in. */
