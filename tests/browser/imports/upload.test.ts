@@ -90,12 +90,12 @@ describe('an upload through the browser', () => {
     await page.getByRole('heading', { name: 'Figures of the week' }).waitFor()
     await page.getByRole('link', { name: /^\d+ of \d+/ }).waitFor()
     const here = page.url()
-    const [there, back] = await page.getByRole('link', { name: /›$/ }).count() ? ['j', 'k'] as const : ['k', 'j'] as const
+    const [there, back] = await page.getByRole('link', { name: /^The next loop/ }).count() ? ['j', 'k'] as const : ['k', 'j'] as const
     await page.locator('body').press(there)
     await page.waitForURL(url => url.href !== here)
     const next = decodeURIComponent(new URL(page.url()).pathname.split('/').at(-1)!)
     await page.locator('h1', { hasText: next }).waitFor()
-    await page.getByRole('link', { name: back === 'k' ? /^‹/ : /›$/ }).waitFor()
+    await page.getByRole('link', { name: back === 'k' ? /^The loop before/ : /^The next loop/ }).waitFor()
     await page.locator('body').press(back)
     await page.waitForURL(here)
     await page.getByRole('heading', { name: 'Figures of the week' }).waitFor()
