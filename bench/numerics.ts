@@ -53,7 +53,8 @@ export async function numerics(times: number): Promise<void> {
     writeFileSync(path, Buffer.concat([sp, pv, op].map(x => Buffer.from(x.buffer))))
     let ours: Record<string, number> = {}
     let theirs: Record<string, number> = {}
-    for (let i = 0; i < 5; i++) measures(sp, pv, op)
+    // warm is what comes after the compiler's last look, some dozens of passes; numpy has nothing to compile
+    for (let i = 0; i < 60; i++) measures(sp, pv, op)
     const first = () => {
       const all: number[] = []
       for (let i = 0; i < 5; i++) {

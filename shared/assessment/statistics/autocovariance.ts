@@ -1,5 +1,6 @@
 import { deviations } from './deviations'
 import { laggedProducts } from './laggedProducts'
+import { workingMemory } from './workingMemory'
 
 /**
  * Biased sample autocovariance c_k = (1/n) sum_t (x_t - m)(x_(t+k) - m), lags 0..maxLag.
@@ -14,7 +15,7 @@ import { laggedProducts } from './laggedProducts'
  * Reference: fixtures/reference/autoregression.json (acf). Cost O(n log maxLag).
  */
 export function autocovariance(x: Float64Array, maxLag: number): Float64Array {
-  const d = deviations(x, 'x')
+  const d = deviations(x, 'x', workingMemory(x.length))
   const c = laggedProducts(d, d, maxLag)
   for (let k = 0; k <= maxLag; k++) c[k] /= x.length
   return c

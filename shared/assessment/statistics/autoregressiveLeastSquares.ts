@@ -3,6 +3,7 @@ import { deviations } from './deviations'
 import { mean } from './mean'
 import { orderByAic } from './orderByAic'
 import { requireOrder } from './requireOrder'
+import { workingMemory } from './workingMemory'
 
 /** A pivot this small against its diagonal element: the lags are linearly dependent to rounding. */
 const SINGULAR = 1e-12
@@ -27,7 +28,7 @@ export function autoregressiveLeastSquares(x: Float64Array, choice: OrderChoice)
   const n = x.length
   if (n < 2) throw new RangeError(`an autoregressive model needs at least 2 samples, got ${n}`)
   const maxOrder = requireOrder(choice, Math.floor((n - 1) / 2))
-  const d = deviations(x, 'x')
+  const d = deviations(x, 'x', workingMemory(n))
   const size = maxOrder + 1
   const products = lagMatrix(d, maxOrder)
 

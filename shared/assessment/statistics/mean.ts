@@ -10,10 +10,21 @@
 export function mean(x: Float64Array): number {
   const n = x.length
   if (n === 0) throw new RangeError('mean needs at least 1 value, got 0')
-  let sum = 0
-  for (let i = 0; i < n; i++) sum += x[i]
-  const first = sum / n
-  let rest = 0
-  for (let i = 0; i < n; i++) rest += x[i] - first
-  return first + rest / n
+  const first = sumLess(x, 0) / n
+  return first + sumLess(x, first) / n
+}
+
+/** Sum of x - level; four partial sums, so that no addition waits for the one before it. */
+function sumLess(x: Float64Array, level: number): number {
+  const n = x.length
+  let s0 = 0, s1 = 0, s2 = 0, s3 = 0
+  let i = 0
+  for (; i + 3 < n; i += 4) {
+    s0 += x[i] - level
+    s1 += x[i + 1] - level
+    s2 += x[i + 2] - level
+    s3 += x[i + 3] - level
+  }
+  for (; i < n; i++) s0 += x[i] - level
+  return (s0 + s1) + (s2 + s3)
 }
