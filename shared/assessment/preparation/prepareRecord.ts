@@ -11,6 +11,7 @@
  * Source: our definitions, laid down with the meanings of the figures.
  */
 import { MODE_UNKNOWN, type LoopRecord, type LoopSetup, type WeekFrame } from '../types'
+import { firstFrom } from './firstFrom'
 import { medianInterval } from './medianInterval'
 
 export const RECEIVED = 1
@@ -60,8 +61,8 @@ export function prepareRecord(record: LoopRecord, setup: LoopSetup, week: WeekFr
   if (!(pvSpan > 0)) throw new RangeError(`prepareRecord: pvHigh must be above pvLow, got ${setup.pvLow} to ${setup.pvHigh}`)
   if (!(opSpan > 0)) throw new RangeError(`prepareRecord: opHigh must be above opLow, got ${setup.opLow} to ${setup.opHigh}`)
 
-  const from = lowerBound(record.t, week.hourEdges[0])
-  const to = lowerBound(record.t, week.hourEdges[week.hourEdges.length - 1])
+  const from = firstFrom(record.t, week.hourEdges[0])
+  const to = firstFrom(record.t, week.hourEdges[week.hourEdges.length - 1])
   const cut = (a: Float64Array | null) => a && a.subarray(from, to)
   let t = record.t.subarray(from, to)
   let pv = record.pv.subarray(from, to)
@@ -199,16 +200,4 @@ function markLimit(op: Float64Array, flags: Uint8Array, bit: number, limit: numb
       run = 0
     }
   }
-}
-
-/** First index whose time is not before `ms`. */
-function lowerBound(t: Float64Array, ms: number): number {
-  let low = 0
-  let high = t.length
-  while (low < high) {
-    const mid = (low + high) >> 1
-    if (t[mid] < ms) low = mid + 1
-    else high = mid
-  }
-  return low
 }

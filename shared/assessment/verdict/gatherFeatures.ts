@@ -5,6 +5,7 @@ import type { LoopSetup, Oscillation } from '../types'
 import type { Ledger } from '../ledger/buildLedger'
 import { OFF_NORMAL, type PreparedRecord } from '../preparation/prepareRecord'
 import type { AnalysisSeries } from '../preparation/analysisSeries'
+import { firstFrom } from '../preparation/firstFrom'
 import type { CycleShape } from './cycleShape'
 import type { ErrorCharacter } from './errorCharacter'
 import type { HalfCycles } from './halfCycles'
@@ -128,18 +129,7 @@ export function gatherFeatures(parts: FeatureParts): FeatureValues {
 
 /** Block indices of an oscillation's episodes. */
 export function spansOf(series: AnalysisSeries, o: Oscillation): [number, number][] {
-  return o.episodes.map(e => [indexOf(series.t, e.fromMs), indexOf(series.t, e.toMs)])
-}
-
-function indexOf(t: Float64Array, ms: number): number {
-  let low = 0
-  let high = t.length
-  while (low < high) {
-    const mid = (low + high) >> 1
-    if (t[mid] < ms) low = mid + 1
-    else high = mid
-  }
-  return low
+  return o.episodes.map(e => [firstFrom(series.t, e.fromMs), firstFrom(series.t, e.toMs)])
 }
 
 /** Amplitude of x at a period (samples), in windows of 8 periods so that a wandering phase does not cancel it; NaN without data. */
