@@ -41,7 +41,11 @@ export async function startImports(db: Knex, environment: Environment): Promise<
     if (bytes >= WORTH_REHEARSING) getReady(2)
     await readers.run({ databaseUrl: environment.DATABASE_URL, importId: id, dataDir })
   }
-  const assess = (task: AssessTask) => assessors.run(task) as Promise<AssessAnswer>
+  const assess = (task: AssessTask) => {
+    // the play has begun
+    ready = true
+    return assessors.run(task) as Promise<AssessAnswer>
+  }
 
   const reading = again(() => readNextImports(db, environment.DATABASE_URL, read, stopped, elsewhere ? row => hasUpload(dataDir, row) : undefined), stopped, 'Reading')
   const assessing = again(() => assessDue(db, assess, { lanes: 2, batch: threads * 4, stopped }), stopped, 'Assessment')

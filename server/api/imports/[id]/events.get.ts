@@ -25,7 +25,7 @@ export default defineEventHandler(async (event) => {
       busy = true
       try {
         event.context.person = undefined
-        const may = await requireImportReader(event).then(() => true, error => (error as { statusCode?: number }).statusCode !== 401)
+        const may = await requireImportReader(event).then(() => true, error => ![401, 403].includes((error as { statusCode?: number }).statusCode ?? 500))
         const found = may ? await findImport(database(), id) : null
         const text = found && JSON.stringify(importView(found))
         if (text && text !== last) res.write(`data: ${last = text}\n\n`)
